@@ -1,0 +1,1 @@
+"""Design calculator for continuous photochlorination reactors."""
