@@ -1,0 +1,47 @@
+"""The radical chain along a solved reactor: its order in light, at the stations."""
+
+import numpy as np
+
+from reactor.kernel.rates import Rates
+
+NEWTON = 12  # steps that bring the radicals to rest before their answer to light is read
+
+
+def light_order(profile, gas, wall_loss):
+    """
+    Return d ln(HCl rate)/d ln J at every station (nan where it is dark).
+
+    The molecules are held, the radicals are stationary: R(r, J) = 0 gives dr/dlnJ = -(dR/dr)^-1 J dR/dJ.
+
+    Parameters
+    ----------
+    profile : Profile
+        The solved reactor.
+    gas : Mechanism
+        Chemistry.
+    wall_loss : float
+        Loss of chlorine atoms at the wall. [1/s]
+
+    Returns
+    -------
+    array (M,)
+    """
+    rates = Rates(gas.tables, gas.photolysis, gas.wall)
+    acid, radical = gas.index["HCl"], np.flatnonzero(gas.radical)
+    order = np.full(len(profile.z), np.nan)
+    for i, (c, T, J) in enumerate(zip(profile.concentrations, profile.temperature, profile.photolysis, strict=True)):
+        if J > 0 and c[gas.index["Cl2"]] > 0:
+            order[i] = _order(rates, c.copy(), T, J, wall_loss, acid, radical)
+    return order
+
+
+def _order(rates, c, T, J, wall_loss, acid, radical):
+    for _ in range(NEWTON):
+        w, by_c, _, by_J, _ = rates.derivatives(c, T, J, wall_loss)
+        inner = by_c[np.ix_(radical, radical)]
+        step = np.linalg.solve(inner, -w[radical])
+        c[radical] = np.maximum(c[radical] + step, 0.1 * c[radical])
+        if np.all(np.abs(step) <= 1e-8 * c[radical] + 1e-30):
+            break
+    response = np.linalg.solve(inner, -J * by_J[radical])
+    return float((by_c[acid, radical] @ response + J * by_J[acid]) / w[acid])

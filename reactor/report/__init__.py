@@ -1,0 +1,1 @@
+"""Terminal report and exports of a saved result; no solver is needed."""
