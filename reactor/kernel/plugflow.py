@@ -56,7 +56,7 @@ class Tube(NamedTuple):
 class Budget(NamedTuple):
     """Tolerance and limits of one solve."""
 
-    rtol: float = 1e-8
+    rtol: float = 1e-7
     steps: int = 20000
     seconds: float = 60.0
 
@@ -82,7 +82,7 @@ class Balance:
 
     def gas(self, y):
         """Return n, T, coolant temperature, P, density [kg/m^3] and concentrations [mol/m^3]."""
-        n, (T, Tc, P) = y[: self.species], y[self.species : self.species + 3]
+        n, (T, Tc, P) = y[: self.species], y[self.species : self.species + 3].tolist()
         density = P / (R * T * n.sum())
         return n, T, Tc, P, density, density * n
 

@@ -17,9 +17,9 @@ class Rates:
         The two first-order steps whose rate constants [1/s] come from the case.
     """
 
-    def __init__(self, tables, photolysis, wall, p_ref=101325.0):
+    def __init__(self, tables, photolysis, wall):
         self.tables, self.photolysis, self.wall = tables, photolysis, wall
-        self.thermo = Thermo(tables, p_ref)
+        self.thermo = Thermo(tables)
         self.net = tables.products - tables.reactants
         self.change = self.net.sum(axis=1)
         self.reversible = np.flatnonzero(tables.reversible)
@@ -30,21 +30,22 @@ class Rates:
         self.backward = _slots(tables.products * tables.reversible[:, None])
 
     def constants(self, T, M, J, wall_loss):
-        """Return k, d ln k/dT and d ln k/d ln M (fall-off only) of every reaction in the forward direction."""
-        t = self.tables
+        """Return the forward rate constant of every reaction, and the order in M of the fall-off reactions."""
+        t, f = self.tables, self.pressure
         k = t.A * T**t.b * np.exp(-t.E / T)
+        blend, order = self._falloff(T, M[f], k[f])
+        k[f] *= blend
+        k[self.photolysis], k[self.wall] = J, wall_loss
+        return k, order
+
+    def slopes(self, T, M):
+        """Return d ln k/dT of every reaction at constant composition; the blend of fall-off by central differences."""
+        t, f, step = self.tables, self.pressure, 1e-4 * T
         slope = t.b / T + t.E / T**2
-        order = np.zeros_like(k)
-        if len(self.pressure):
-            step = 1e-4 * T
-            f = self.pressure
-            blend, order[f] = self._falloff(T, M[f], k[f])
-            hot, cold = (self._falloff(T + d, M[f], self._high(f, T + d))[0] for d in (step, -step))
-            k[f] *= blend
-            slope[f] += (np.log(hot) - np.log(cold)) / (2 * step)
-        for number, value in ((self.photolysis, J), (self.wall, wall_loss)):
-            k[number], slope[number] = value, 0.0
-        return k, slope, order
+        hot, cold = (self._falloff(T + d, M[f], self._high(f, T + d))[0] for d in (step, -step))
+        slope[f] += (np.log(hot) - np.log(cold)) / (2 * step)
+        slope[self.photolysis] = slope[self.wall] = 0.0
+        return slope
 
     def _high(self, f, T):
         t = self.tables
@@ -74,7 +75,7 @@ class Rates:
     def both(self, c, T, J, wall_loss):
         """Return the forward and reverse rate [mol/m3/s] of every reaction."""
         M = self.tables.efficiencies @ c
-        k, _, _ = self.constants(T, M, J, wall_loss)
+        k, _ = self.constants(T, M, J, wall_loss)
         _, _, h, g = self.thermo.at(T)
         K, _ = self.equilibrium(T, h, g)
         q_f, q_r = k * _product(c, self.forward), np.zeros_like(k)
@@ -92,7 +93,9 @@ class Rates:
     def derivatives(self, c, T, J, wall_loss):
         """Return production w, dw/dc (K, K), dw/dT at fixed c, dw/dJ, and the reverse rates."""
         M = self.tables.efficiencies @ c
-        k, slope, order = self.constants(T, M, J, wall_loss)
+        k, falling = self.constants(T, M, J, wall_loss)
+        slope, order = self.slopes(T, M), np.zeros_like(k)
+        order[self.pressure] = falling
         _, _, h, g = self.thermo.at(T)
         K, K_slope = self.equilibrium(T, h, g)
         r, body = self.reversible, self.collider

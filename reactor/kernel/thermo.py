@@ -4,14 +4,14 @@ import numpy as np
 
 R = 8.31446261815324  # J/mol/K, exact in the SI of 2019
 AVOGADRO = 6.02214076e23  # 1/mol, exact
-P_REF = 1e5  # Pa; the tables are made for 1 atm or 1 bar by their own key
 
 
 class Thermo:
     """The polynomials of all species, read at one temperature at a time."""
 
-    def __init__(self, tables, p_ref):
-        self.low, self.high, self.t_mid, self.p_ref = tables.nasa_low, tables.nasa_high, tables.t_mid, p_ref
+    def __init__(self, tables):
+        self.low, self.high, self.t_mid = tables.nasa_low, tables.nasa_high, tables.t_mid
+        self.p_ref = tables.reference_pressure
 
     def coefficients(self, T):
         """Return the (K, 7) coefficients that hold at `T`."""

@@ -45,3 +45,43 @@ def _order(rates, c, T, J, wall_loss, acid, radical):
             break
     response = np.linalg.solve(inner, -J * by_J[radical])
     return float((by_c[acid, radical] @ response + J * by_J[acid]) / w[acid])
+
+
+def dark_chain(stream, gas):
+    """
+    Return what the dark chain of an unreacted gas needs: two functions of T and the fuel's mole fraction.
+
+    Parameters
+    ----------
+    stream : Stream
+        The gas.
+    gas : Mechanism
+        Chemistry.
+
+    Returns
+    -------
+    propagation, equilibrium : callable
+        Mean rate constant of Cl + RH [m^3/mol/s] and Kc of Cl2 = 2 Cl [mol/m^3], of T in K.
+    fuel : float
+        Mole fraction of all RH. [-]
+    """
+    rates, t = Rates(gas.tables, gas.photolysis, gas.wall), gas.tables
+    atom, acid = gas.index["Cl"], gas.index["HCl"]
+    taking = np.flatnonzero((t.reactants[:, atom] == 1) & (t.products[:, acid] == 1) & ~t.third_body)
+    partner = t.reactants[taking].copy()
+    partner[:, atom] = 0.0
+    share = partner @ stream.fractions
+    present = partner.T @ (share > 0) > 0
+    fuel = float(stream.fractions[present].sum())
+    recombination = int(np.flatnonzero(rates.reversible == gas.start[0])[0])
+    none = np.zeros(len(t.A))
+
+    def propagation(T):
+        k, _ = rates.constants(T, none, 0.0, 0.0)
+        return float(k[taking] @ share) / fuel
+
+    def equilibrium(T):
+        _, _, h, g = rates.thermo.at(T)
+        return 1.0 / float(rates.equilibrium(T, h, g)[0][recombination])
+
+    return propagation, equilibrium, fuel

@@ -9,10 +9,13 @@ from reactor.models import assemble
 from reactor.models.profile import Profile
 from reactor.stream import Stream
 
-SCAN = 8  # coarse steps in the search for a second, hotter solution against the flow
+SCAN, REACH = 6, 300.0  # steps, and kelvin above the gas, of the search for a second, hotter solution
+SECANTS = 8  # steps of the secant rule before a bracket is sought
+LOOSE = Budget(rtol=1e-5)
+COOLANT = -2  # place of the coolant's temperature in the kernel's state
 
 
-def solve(case, plant):
+def solve(case, plant, look_further=True):
     """
     Return the solved tube as a `Profile`.
 
@@ -22,6 +25,8 @@ def solve(case, plant):
         The checked case.
     plant : Plant
         Chemistry, light and heat exchange of one tube.
+    look_further : bool
+        Against the flow: also look for a hotter solution.
 
     Raises
     ------
@@ -37,7 +42,7 @@ def solve(case, plant):
         return integrate(tube, n, inlet.temperature, Tc, case.vessel.pressure, mass_flow, budget)
 
     if case.cooling.mode == "counter-current":
-        path, remarks = _against(run, case.cooling.inlet, inlet.temperature)
+        path, remarks = _against(run, case.cooling.inlet, inlet.temperature, look_further)
     else:
         path, remarks = run(case.cooling.inlet or inlet.temperature), ()
     return _profile(case, gas, tube, inlet, path, remarks)
@@ -52,36 +57,55 @@ def _tube(case, plant):
                 assemble.sections(case, gas, light))
 
 
-def _against(run, entering, hot):
-    """Find where the coolant must leave so that it enters at `entering`; report the cold solution, seek others."""
-    loose = Budget(rtol=1e-5)
-    K = -1  # the coolant temperature stands before the pressure in the state
-
-    def miss(Tc, budget=loose):
-        return run(Tc, budget).state[-1, K - 1] - entering
-
-    top = max(hot, entering) + 400.0
-    grid = np.linspace(entering, top, SCAN)
-    values = [miss(Tc) for Tc in grid]
-    crossings = [i for i in range(SCAN - 1) if values[i] * values[i + 1] <= 0]
-    if not crossings:
-        raise ConvergenceError(f"no coolant temperature between {entering:.0f} and {top:.0f} K lets the coolant enter "
-                               f"at {entering:.1f} K against the gas; raise cooling.flow")
-    first = crossings[0]
-    Tc = _root(miss, grid[first], grid[first + 1])
+def _against(run, entering, hot, look_further):
+    """Find where the coolant must leave so that it enters at `entering`: the solution reached from the cold side."""
+    Tc = _cold_side(run, entering, hot)
     remarks = ["counter-current coolant: the solution reached from the cold side is reported"]
-    if len(crossings) > 1:
-        remarks.append(f"a hotter solution exists too, with the coolant leaving between {grid[crossings[-1]]:.0f} and "
-                       f"{grid[crossings[-1] + 1]:.0f} K")
-    else:
-        remarks.append(f"no hotter solution was seen with the coolant leaving at up to {top:.0f} K")
+    if look_further:
+        remarks.append(_hotter(run, entering, Tc, hot))
     return run(Tc), tuple(remarks)
 
 
-def _root(miss, low, high):
+def _cold_side(run, entering, hot):
+    """Return the lowest leaving temperature that fits, by the secant rule from a coolant that does not warm."""
+    cold, miss = entering, run(entering, LOOSE).state[-1, COOLANT] - entering
+    warm = cold - miss
+    for _ in range(SECANTS):
+        new = run(warm).state[-1, COOLANT] - entering
+        if abs(new) < 1e-6:
+            return warm
+        cold, warm, miss = warm, warm - new * (warm - cold) / (new - miss), new
+        if not entering - 5.0 <= warm <= max(entering, hot) + REACH:
+            break
+    return _bracketed(run, entering, hot)
+
+
+def _bracketed(run, entering, hot):
+    """Return the lowest root between the coolant's inlet and `REACH` above the gas, by bracket and Brent's rule."""
     from scipy.optimize import brentq
 
-    return brentq(lambda Tc: miss(Tc, Budget()), low, high, xtol=1e-7, rtol=1e-12)
+    def miss(Tc):
+        return run(Tc).state[-1, COOLANT] - entering
+
+    grid = np.linspace(entering, max(hot, entering) + REACH, 4 * SCAN)
+    last = miss(grid[0])
+    for low, high in zip(grid, grid[1:], strict=False):
+        new = miss(high)
+        if last * new <= 0:
+            return brentq(miss, low, high, xtol=1e-7, rtol=1e-12)
+        last = new
+    raise ConvergenceError(f"no coolant temperature between {grid[0]:.0f} and {grid[-1]:.0f} K lets the coolant enter "
+                           f"at {entering:.1f} K against the gas; raise cooling.flow")
+
+
+def _hotter(run, entering, found, hot):
+    """Say whether the coolant's balance closes once more at a higher leaving temperature."""
+    grid = np.linspace(found + 1.0, max(hot, entering) + REACH, SCAN)
+    misses = [run(Tc, LOOSE).state[-1, COOLANT] - entering for Tc in grid]
+    for low, high, x, y in zip(grid, grid[1:], misses, misses[1:], strict=False):
+        if x * y <= 0:
+            return f"a hotter solution exists too, with the coolant leaving between {low:.0f} and {high:.0f} K"
+    return f"no hotter solution was seen with the coolant leaving at up to {grid[-1]:.0f} K"
 
 
 def _profile(case, gas, tube, inlet, path, remarks):

@@ -13,7 +13,7 @@ from reactor.stream import Stream
 RESIDENCES = 50  # residence times followed from the start before the nearest steady state is named
 
 
-def solve(case, plant):
+def solve(case, plant, look_further=True):
     """
     Return the solved tank as a `Profile` of one station.
 
@@ -23,6 +23,8 @@ def solve(case, plant):
         The checked case.
     plant : Plant
         Chemistry, light and heat exchange of one tank.
+    look_further : bool
+        Without meaning here: all steady states are always found.
 
     Raises
     ------

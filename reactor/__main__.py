@@ -1,0 +1,6 @@
+"""`python -m reactor` is the command `reactor`."""
+
+from reactor.cli import main
+
+if __name__ == "__main__":
+    main()

@@ -1,0 +1,24 @@
+"""The case: TOML in, frozen records of SI floats, TOML out; every fault names file, line, key and cure."""
+
+from reactor.case.reader import changed, load, loads
+from reactor.case.schema import (
+    About,
+    Assumed,
+    Case,
+    Chemistry,
+    Cooling,
+    Feed,
+    Inject,
+    Lamp,
+    Limits,
+    Meters,
+    Sleeve,
+    Solver,
+    Vessel,
+    Window,
+)
+from reactor.case.templates import template
+from reactor.case.writer import dump
+
+__all__ = ["About", "Assumed", "Case", "Chemistry", "Cooling", "Feed", "Inject", "Lamp", "Limits", "Meters"]
+__all__ += ["Sleeve", "Solver", "Vessel", "Window", "changed", "dump", "load", "loads", "template"]

@@ -1,0 +1,122 @@
+"""What keys must agree on with one another, and the defaults that follow from other sections."""
+
+from reactor.case import feeds
+from reactor.case.values import Listed
+
+COOLANT = Listed("a cooling medium", "heat/coolants.csv", "medium")
+SLEEVE = Listed("a sleeve material", "photons/windows.csv", "material")
+
+
+def apply(draft, parts, feed):
+    """Check a case across its sections and fill what depends on more than one of them."""
+    vessel = parts.get("vessel", {})
+    _vessel(draft, vessel)
+    for number, lamp in enumerate(parts["lamp"], start=1):
+        _lamp(draft, lamp, f"lamp.{number}", vessel.get("length"))
+    _sleeve(draft, parts, vessel)
+    _cooling(draft, parts["cooling"])
+    _inject(draft, parts["inject"], feed, vessel)
+    chemistry = parts["chemistry"]
+    if chemistry.get("wall_loss") is not None and chemistry.get("wall_sticking") is not None:
+        draft.fault("chemistry.wall_sticking", "wall_loss is given too; write one of the two")
+
+
+def _vessel(draft, vessel):
+    """Check the vessel against its kind."""
+    if "kind" not in vessel:
+        return
+    if vessel["kind"] == "stirred tank":
+        if "stirring" in vessel and vessel["stirring"] is None:
+            draft.fault("vessel.stirring", 'missing; a stirred tank needs it; write it like "300 rpm"')
+        if vessel.get("geometry"):
+            draft.fault("vessel.geometry", "belongs to plug flow; take it out of a stirred tank")
+        return
+    if "geometry" in vessel and vessel["geometry"] is None:
+        draft.fault("vessel.geometry", 'missing; write "annulus"')
+    for name in ("stirring", "impeller", "start"):
+        if f"vessel.{name}" in draft.typed:
+            draft.fault(f"vessel.{name}", "belongs to a stirred tank; take it out of plug flow")
+
+
+def _lamp(draft, lamp, key, length):
+    """Check one lamp entry and fill the end of its lit length."""
+    if "kind" in lamp and "spectrum" in lamp:
+        if lamp["kind"] and lamp["spectrum"]:
+            draft.fault(f"{key}.spectrum", "kind is given too; write one of the two")
+        if not lamp["kind"] and not lamp["spectrum"]:
+            draft.fault(f"{key}.kind", 'missing; write a kind, like "LED 365 nm", or spectrum = "mine.csv"')
+    if "lit_to" in lamp and lamp["lit_to"] is None and length is not None:
+        lamp["lit_to"] = draft.assume(f"{key}.lit_to", length, "lit to the outlet", "m")
+    start, stop = lamp.get("lit_from"), lamp.get("lit_to")
+    if length is not None and stop is not None and stop > length:
+        draft.fault(f"{key}.lit_to", f"{stop:g} m lies beyond the vessel, which ends at {length:g} m")
+    elif start is not None and stop is not None and start >= stop:
+        draft.fault(f"{key}.lit_from", f"{start:g} m is not before lit_to, {stop:g} m")
+
+
+def _sleeve(draft, parts, vessel):
+    """Check that there is a sleeve where one is needed and that it fits into the shell."""
+    sleeve, lamps = parts["sleeve"], parts["lamp"]
+    if sleeve is None:
+        if (lamps or vessel.get("kind") == "plug flow") and "sleeve" not in parts["faulty"]:
+            draft.fault("sleeve", "this section is missing; write [sleeve] and its keys")
+        return
+    tank = vessel.get("kind") == "stirred tank"
+    if "number" in sleeve and sleeve["number"] is None:
+        total = sum(lamp.get("number") or 1 for lamp in lamps) or 1
+        sleeve["number"] = draft.assume("sleeve.number", total, "one sleeve a lamp") if tank else 1
+    elif sleeve.get("number", 1) != 1 and vessel.get("kind") == "plug flow":
+        draft.fault("sleeve.number", "an annulus has one sleeve; more of them belong to a stirred tank")
+    outside, thickness, inside = sleeve.get("outside"), sleeve.get("thickness"), vessel.get("shell_inside")
+    if outside and thickness and 2 * thickness >= outside:
+        draft.fault("sleeve.thickness", f"{thickness:g} m on each side fills the {outside:g} m outside")
+    if outside and inside and outside >= inside:
+        draft.fault("sleeve.outside", f"{outside:g} m does not fit into vessel.shell_inside, {inside:g} m")
+    if sleeve.get("material") and sleeve.get("transmission", "") is None:
+        _known(draft, "sleeve.material", SLEEVE, sleeve["material"])
+
+
+def _known(draft, key, listed, name):
+    """Note a name that the data do not know."""
+    try:
+        listed.read(name)
+    except ValueError as error:
+        draft.fault(key, str(error))
+
+
+def _cooling(draft, cooling):
+    """Check that a coolant has what its mode needs."""
+    mode = cooling.get("mode", "none")
+    if mode == "none":
+        return
+    if "inlet" in cooling and cooling["inlet"] is None:
+        draft.fault("cooling.inlet", f'missing; {mode} cooling needs it; write a temperature, like "30 degC"')
+    if mode != "constant" and "flow" in cooling and cooling["flow"] is None:
+        draft.fault("cooling.flow", f'missing; {mode} cooling needs it; write a mass flow, like "1200 kg/h"')
+    own_film = mode == "constant" and (cooling.get("film") or cooling.get("overall"))
+    if "medium" in cooling and cooling["medium"] is None and not own_film:
+        draft.fault("cooling.medium", 'missing; write a cooling medium, like "water"')
+    elif cooling.get("medium") and not own_film:
+        _known(draft, "cooling.medium", COOLANT, cooling["medium"])
+
+
+def _inject(draft, injects, feed, vessel):
+    """Check the injectors and give them the temperature of the chlorine they share."""
+    if not injects:
+        return
+    if vessel.get("kind") == "stirred tank":
+        draft.fault("inject", "belongs to plug flow; a stirred tank takes all its feed at once")
+    carriers = feeds.carriers(feed)
+    if len(carriers) > 1:
+        draft.fault("inject", f"shares need one stream that brings chlorine; here are {', '.join(carriers)}")
+    total = sum(inject.get("share", 0.0) for inject in injects)
+    if total > 1 + 1e-9:
+        draft.fault("inject", f"shares sum to {100 * total:.6g} %; they are of all chlorine, at most 100 %")
+    for number, inject in enumerate(injects, start=1):
+        key = f"inject.{number}"
+        if inject.get("position", 0.0) >= vessel.get("length", float("inf")):
+            where = f"{inject['position']:g} m lies beyond the vessel"
+            draft.fault(f"{key}.position", f"{where}, which ends at {vessel['length']:g} m")
+        if len(carriers) == 1 and "temperature" in inject and inject["temperature"] is None:
+            same = feed[carriers[0]].temperature
+            inject["temperature"] = draft.assume(f"{key}.temperature", same, f"as feed.{carriers[0]}", "K")

@@ -1,0 +1,18 @@
+"""Light: lamp spectrum, sleeve, chlorine absorption, radiation field of each geometry, photon ledger."""
+
+from reactor.photons.account import ledger
+from reactor.photons.chlorine import cross_section, cross_section_grade
+from reactor.photons.lamps import lamp, spectrum_from_csv
+from reactor.photons.supply import Light, light
+from reactor.photons.windows import transmission
+
+__all__ = [
+    "Light",
+    "cross_section",
+    "cross_section_grade",
+    "lamp",
+    "ledger",
+    "light",
+    "spectrum_from_csv",
+    "transmission",
+]

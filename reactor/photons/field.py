@@ -1,0 +1,224 @@
+"""
+The radiation field in the annulus between a sleeve and a shell, around a long lamp on the axis.
+
+Symbols: S photons per metre of lamp entering the gas [mol/m/s]; r1, r2 inner and outer radius of the gas;
+a radius of the lamp; kappa absorption coefficient, base e; tau = kappa (r2 - r1); t = kappa (r - r1).
+G is the fluence rate: photons from all directions per area of a small sphere's cross-section. It is never the
+irradiance of a wall. The four laws of emission and what they say about G and the absorbed share:
+
+isotropic line        S/(2 pi r) Ki_1(t)         1 - Ki_2(tau)          arcs, thin plasma
+sine-law line         2 S/(pi^2 r) Ki_2(t)       1 - (4/pi) Ki_3(tau)   surface emitter, radius -> 0
+Lambertian cylinder   by quadrature              by quadrature          phosphor tubes, LED strips
+radial                S/(2 pi r) exp(-t)         1 - exp(-tau)          lower bracket, by name only
+"""
+
+from dataclasses import dataclass
+from functools import cache
+
+import numpy as np
+
+from reactor.curve import Curve, tabulate
+from reactor.photons.bickley import bickley, bickley_deficit
+
+ISOTROPIC, SINE, LAMBERTIAN, RADIAL = "isotropic line", "sine-law line", "Lambertian cylinder", "radial"
+LAWS = (ISOTROPIC, LAMBERTIAN, SINE, RADIAL)
+FIRST, LAST, POINTS = np.log(1e-8), np.log(1e5), 2000  # grid of ln(tau); measured: 1e-8 relative
+
+
+@dataclass(frozen=True)
+class Field:
+    """An emission law and its annulus: inner, outer and lamp radius [m]; lines have no lamp radius."""
+
+    law: str
+    inside: float
+    outside: float
+    lamp: float = 0.0
+
+
+@cache
+def _gauss(count):
+    """Return Gauss-Legendre nodes and weights on 0..1."""
+    nodes, weights = np.polynomial.legendre.leggauss(count)
+    return (nodes + 1) / 2, weights / 2
+
+
+def _chords(field):
+    """Return the paths across the annulus, seen along the axis, over r2 - r1, and their weights."""
+    s, weight = _gauss(24)
+    u = np.sin(s * np.pi / 2)  # offset of the ray from the axis, over the lamp radius
+    share = weight * np.pi / 2 * np.cos(s * np.pi / 2)
+    offset = (field.lamp * u) ** 2
+    chord = np.sqrt(field.outside**2 - offset) - np.sqrt(field.inside**2 - offset)
+    return chord / (field.outside - field.inside), share
+
+
+def absorbed_per_depth(field, tau):
+    """
+    Return the absorbed share of the light entering the gas, divided by the optical depth of the gap.
+
+    Parameters
+    ----------
+    field : Field
+        Emission law and radii. [-]
+    tau : float or array
+        Optical depth kappa (r2 - r1). [-]
+
+    Returns
+    -------
+    g : same shape as `tau`
+        f/tau, exact also where tau is tiny. [-]
+
+    Examples
+    --------
+    >>> print(f"{absorbed_per_depth(Field(ISOTROPIC, 0.03, 0.055), 1.0):.6f}")
+    0.726379
+    """
+    tau = np.asarray(tau, float)
+    if field.law == ISOTROPIC:
+        return bickley_deficit(2, tau)
+    if field.law == SINE:
+        return 4 / np.pi * bickley_deficit(3, tau)
+    if field.law == RADIAL:
+        depth = np.maximum(tau, 1e-30)
+        return -np.expm1(-depth) / depth
+    return 4 / np.pi * sum(w * m * bickley_deficit(3, tau * m) for m, w in zip(*_chords(field), strict=True))
+
+
+def absorbed(field, tau):
+    """
+    Return the absorbed share f of the light entering the gas.
+
+    Parameters
+    ----------
+    field : Field
+        Emission law and radii. [-]
+    tau : float or array
+        Optical depth kappa (r2 - r1). [-]
+
+    Returns
+    -------
+    f : same shape as `tau`
+        Absorbed over entering photons. [-]
+    """
+    return tau * absorbed_per_depth(field, tau)
+
+
+def transmitted(field, tau):
+    """
+    Return the share of the light entering the gas that reaches the outer wall, by its own integral.
+
+    Parameters
+    ----------
+    field : Field
+        Emission law and radii. [-]
+    tau : float or array
+        Optical depth kappa (r2 - r1). [-]
+
+    Returns
+    -------
+    share : same shape as `tau`
+        Photons at the outer wall over entering photons; not 1 - f in disguise. [-]
+
+    Examples
+    --------
+    >>> print(f"{transmitted(Field(SINE, 0.03, 0.055), 1.0):.6f}")
+    0.302834
+    """
+    tau = np.asarray(tau, float)
+    if field.law == ISOTROPIC:
+        return bickley(2, tau)
+    if field.law == SINE:
+        return 4 / np.pi * bickley(3, tau)
+    if field.law == RADIAL:
+        return np.exp(-tau)
+    return 4 / np.pi * sum(w * bickley(3, tau * m) for m, w in zip(*_chords(field), strict=True))
+
+
+@cache
+def tables(field):
+    """Return f/tau and the transmitted share as curves against ln(tau), 1e-8 to 1e5."""
+    per_depth: Curve = tabulate(lambda x: absorbed_per_depth(field, np.exp(x)), FIRST, LAST, POINTS)
+    passed: Curve = tabulate(lambda x: transmitted(field, np.exp(x)), FIRST, LAST, POINTS)
+    return per_depth, passed
+
+
+def fluence_rate(field, r, kappa):
+    """
+    Return the fluence rate per photon flow that enters the gas from one metre of lamp.
+
+    Parameters
+    ----------
+    field : Field
+        Emission law and radii. [-]
+    r : float or array
+        Radius, from inside to outside radius of the gas. [m]
+    kappa : float or array
+        Absorption coefficient, base e; broadcast against `r`. [1/m]
+
+    Returns
+    -------
+    G : array, broadcast of `r` and `kappa`
+        Fluence rate over S; multiply by S in mol/m/s for mol/m2/s. [1/m]
+
+    Examples
+    --------
+    >>> print(f"{fluence_rate(Field(LAMBERTIAN, 0.01, 0.05, 0.01), 0.02, 0.0):.4f}")
+    10.6103
+    """
+    r = np.asarray(r, float)
+    depth = np.asarray(kappa) * (r - field.inside)
+    if field.law == ISOTROPIC:
+        return bickley(1, depth) / (2 * np.pi * r)
+    if field.law == SINE:
+        return 2 * bickley(2, depth) / (np.pi**2 * r)
+    if field.law == RADIAL:
+        return np.exp(-depth) / (2 * np.pi * r)
+    return _lambertian_fluence(field, r, np.asarray(kappa))
+
+
+def _lambertian_fluence(field, r, kappa):
+    """Return G/S = 2/(pi^2 a) int_0^asin(a/r) Ki_2(kappa s(eta)) d eta, sin(eta) = (a/r) sin(theta)."""
+    a, total = field.lamp, 0.0
+    for s, weight in zip(*_gauss(24), strict=True):
+        theta = s * np.pi / 2
+        cos_eta = np.sqrt(1 - (a / r * np.sin(theta)) ** 2)
+        path = r * cos_eta - np.sqrt(field.inside**2 - (a * np.sin(theta)) ** 2)
+        total = total + weight * np.cos(theta) / cos_eta * bickley(2, kappa * path)
+    return total / (np.pi * r)
+
+
+def unevenness(field, tau, share=1.0):
+    """
+    Return how far a fully mixed radical pool overstates the mean rate of a square-root chain: <sqrt J>^2/<J>.
+
+    Parameters
+    ----------
+    field : Field
+        Emission law and radii. [-]
+    tau : float or array, shape (n,)
+        Optical depth of the gap in each line. [-]
+    share : float or array, shape (n,)
+        Weight of each line in the photolysis, that is its photon flow times its cross-section. [-]
+
+    Returns
+    -------
+    ratio : float
+        1 in an even field, smaller where the light stays near the sleeve; means over the gas volume. [-]
+
+    Examples
+    --------
+    >>> print(f"{unevenness(Field(ISOTROPIC, 0.01, 0.03), 1.0) ** 0.5:.4f}")
+    0.9347
+    """
+    tau = np.atleast_1d(np.asarray(tau, float))
+    if not tau.size:
+        return 1.0
+    gap = field.outside - field.inside
+    s, weight = _gauss(48)
+    stretch = np.log1p(np.max(tau)) + 1e-3  # crowds the nodes at the sleeve when the gas is thick
+    place = np.expm1(stretch * s) / np.expm1(stretch)
+    r = field.inside + gap * place
+    volume = weight * np.exp(stretch * s) * r
+    G = fluence_rate(field, r[:, None], tau / gap) @ np.broadcast_to(np.asarray(share, float), tau.shape)
+    total = volume.sum()
+    return float((volume @ np.sqrt(G) / total) ** 2 / (volume @ G / total))

@@ -1,0 +1,78 @@
+"""The accounts of a rated case: light line by line, streams, and the profile in columns."""
+
+import numpy as np
+
+from reactor import photons
+
+AVOGADRO = 6.02214076e23  # 1/mol, exact
+KEPT = 400  # stations kept in a saved profile
+
+
+def light_ledger(light, profile, case):
+    """Return the light account of all tubes as rows {name, part_of, power, photons} [W], [mol/s]."""
+    if not len(light.wavelength):
+        return ()
+    absorbed, outer = per_line(light, profile)
+    found = photons.ledger(light, absorbed, outer, parallel=case.vessel.parallel)
+    return tuple({"name": r.name, "part_of": r.part_of, "power": r.watts, "photons": r.photons} for r in found.rows)
+
+
+def per_line(light, profile):
+    """
+    Return photons absorbed and photons at the outer wall of one tube, by line [mol/s].
+
+    Both shares are integrated over the same stations, so that together they are what enters.
+    """
+    chlorine = profile.species.index("Cl2")
+    c, T = profile.concentrations[:, chlorine], profile.temperature
+    t = np.clip((T - 550.0) / 350.0, -1.0, 1.0)
+    sigma = np.array([np.polynomial.polynomial.polyval(t, row) for row in light.sigma]).T
+    tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
+    share = light.absorbed(np.log(tau))[0] * tau
+    if len(profile.z) == 1:
+        mean = share[0]
+        return mean * light.entering, (1 - mean) * light.entering
+    absorbed = np.zeros(len(light.wavelength))
+    for entering, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
+        inside = (profile.z >= start) & (profile.z <= stop)
+        absorbed += entering * np.trapezoid(share[inside], profile.z[inside], axis=0)
+    return absorbed, light.entering - absorbed
+
+
+def streams(profile, gas):
+    """Return feeds, mixed inlet and outlet as records with composition in mol/s."""
+    found = []
+    for stream in (*profile.feeds, profile.inlet, profile.outlet):
+        composition = {s: float(n) for s, n in zip(gas.species, stream.moles, strict=True) if n > 1e-12 * stream.total}
+        found.append({
+            "name": stream.name,
+            "moles": {"value": stream.total, "unit": "mol/s"},
+            "mass": {"value": stream.mass(gas) * 3600, "unit": "kg/h"},
+            "temperature": {"value": stream.temperature, "unit": "K"},
+            "pressure": {"value": stream.pressure, "unit": "Pa"},
+            "composition": {"value": composition, "unit": "mol/s"},
+        })
+    return tuple(found)
+
+
+def columns(profile, gas, classes):
+    """Return the profile as {name [unit]: list}, thinned to at most `KEPT` stations (ends and hottest kept)."""
+    keep = thinned(profile)
+    found = {
+        "z [m]": profile.z, "temperature [K]": profile.temperature, "coolant [K]": profile.coolant,
+        "pressure [Pa]": profile.pressure, "time [s]": profile.totals["time"], "J [1/s]": profile.photolysis,
+        "photons_absorbed [mol/s]": profile.totals["photons"],
+        "thermal_starts [mol/s]": profile.totals["thermal_starts"],
+        "heat_reaction [W]": profile.totals["heat_reaction"], "heat_removed [W]": profile.totals["to_wall"],
+    }
+    found |= {f"{species} [mol/s]": profile.moles[:, i] for i, species in enumerate(gas.species)}
+    return {name: [float(x) for x in np.asarray(values)[keep]] for name, values in found.items()} | {
+        "class": [str(classes[i]) for i in keep]
+    }
+
+
+def thinned(profile):
+    """Return the numbers of the stations that are kept."""
+    last = len(profile.z) - 1
+    even = np.unique(np.linspace(0, last, min(KEPT, last + 1)).round().astype(int))
+    return np.union1d(even, [int(profile.temperature.argmax())])

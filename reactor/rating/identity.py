@@ -1,0 +1,63 @@
+"""What was put in, what was taken for granted, what was relied on, and the hashes that name a run."""
+
+import hashlib
+from functools import cache
+from pathlib import Path
+
+from reactor import library
+
+
+def inputs(case):
+    """Return the typed entries as records {key, typed, si}."""
+    return tuple({"key": key, "typed": typed, "si": "" if si == typed else si} for key, typed, si, origin, _ in case.listing()
+                 if origin == "typed")
+
+
+def assumed(case):
+    """Return the defaults taken as records {key, value, why}."""
+    return tuple({"key": a.key, "value": a.value, "why": a.why} for a in case.assumed)
+
+
+def deviations(case):
+    """Return what the command line changed as records {key, old, new}."""
+    return tuple({"key": key, "old": old, "new": new} for key, old, new in case.deviations)
+
+
+def relied_on(plant, more):
+    """Return every distinct number that chemistry, light, walls and hazards rely on."""
+    return tuple(dict.fromkeys((*plant.gas.cited, *plant.light.cited, *plant.wall.cited, *more)))
+
+
+def sources(plant, more):
+    """Return `relied_on` as records {what, source, status}."""
+    return tuple(cited._asdict() for cited in relied_on(plant, more))
+
+
+def identity(case, gas):
+    """Return the hashes of case, data and program, and the versions."""
+    from importlib.metadata import version
+
+    return {
+        "case": case.hash(),
+        "data": digest("data"),
+        "mechanism": hashlib.sha256(gas.path.read_bytes()).hexdigest(),
+        "program": version("photochlorination-reactor"),
+        "code": digest("code"),
+        "numpy": version("numpy"),
+        "cantera": version("cantera"),
+        "scipy": version("scipy"),
+    }
+
+
+@cache
+def digest(which):
+    """Return the SHA-256 of all data files, or of all modules of the program, in order of their names."""
+    folder = library.folder() if which == "data" else Path(__file__).parent.parent
+    endings = (".csv", ".toml", ".yaml") if which == "data" else (".py", ".c", ".h")
+    found = hashlib.sha256()
+    for path in sorted(folder.rglob("*")):
+        relative = path.relative_to(folder)
+        if path.suffix in endings and not (which == "code" and relative.parts[0] in ("data", "cases")):
+            found.update(relative.as_posix().encode() + b"\0" + path.read_bytes())
+    return found.hexdigest()
+
