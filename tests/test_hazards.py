@@ -11,7 +11,7 @@ from hypothesis import strategies as st
 
 from reactor import chemistry, library
 from reactor.errors import CaseError, RangeError
-from reactor.hazards import cautions, corners, dewpoint, exotherm, explosive, materials, windows
+from reactor.hazards import cautions, corners, dewpoint, exotherm, explosive, materials, substitution, windows
 from reactor.hazards.explosive import ORDER, Class
 from reactor.stream import Stream
 
@@ -66,7 +66,7 @@ def test_a_mixture_reports_its_fractions_and_ratio():
     [({"CH4": 10, "Cl2": 1, "O2": 0.02}, {}, "O2"),
      ({"CH4": 10, "Cl2": 1}, {"P": 3.1e5}, "bar"),
      ({"CH4": 150, "Cl2": 1}, {"T": 474.0}, "premixed"),
-     ({"C3H8": 10, "1-C3H7Cl": 0.2, "Cl2": 1}, {}, "1-C3H7Cl"),
+     ({"C3H8": 10, "1,1,2,2-C2H2Cl4": 0.2, "Cl2": 1}, {}, "1,1,2,2-C2H2Cl4"),
      ({"CH4": 10, "Cl2": 1, "C2H2": 1e-4}, {}, "without any data")],
 )  # fmt: skip
 def test_a_gate_makes_a_mixture_unknown(composition, words, hint):
@@ -369,3 +369,16 @@ def test_the_caveats_are_written_down():
     assert not [
         line for line in text.splitlines() if re.search(r"\bsafe\b", line, re.I) and '"safe"' not in line
     ]
+
+
+@pytest.mark.parametrize("fuel", ["1-C3H7Cl", "2-C3H7Cl", "1,2-C3H6Cl2", "1,1-C2H4Cl2", "1,2-C2H4Cl2", "n-C4H10"])
+def test_a_calculated_range_encloses_the_threshold_and_is_marked(fuel):
+    # Source: own_substitution (computed): 870 K by substitution at 25 degC. Golden: proves only that nothing moved.
+    shares = np.arange(0.005, 0.95, 0.0025)
+    x = np.zeros((len(shares), len(GAS.species)))
+    x[:, GAS.index[fuel]], x[:, GAS.index["Cl2"]] = shares, 1 - shares
+    hot = substitution.adiabatic_temperature(BOOK.rungs, explosive.fractions(BOOK, x), np.full(len(x), 298.15)) >= 870.0
+    window = windows.windows()[fuel]
+    assert window.calculated_only
+    assert window.lower <= shares[hot].min() <= window.lower + 0.005
+    assert window.upper - 0.0125 <= shares[hot].max() <= window.upper
