@@ -1,7 +1,8 @@
 """What a run found, as plain records that survive a file: numbers with units, verdicts, sources, a profile."""
 
 import json
-from dataclasses import asdict, dataclass, field
+from dataclasses import asdict, dataclass, field, fields
+from math import isfinite
 from typing import NamedTuple
 
 from reactor.errors import CaseError
@@ -21,17 +22,85 @@ class Verdict(NamedTuple):
 
 WORDS = ("PASS", "NOT ASSESSED", "CAUTION", "OUT OF DATA RANGE", "FAIL")
 
+NAMES = {  # every entry of `results`: its unit (or what it is), and its definition
+    "conversion_chlorine": ("1", "of all chlorine fed, injected portions included"),
+    "conversion_alkane": ("1", "of every organic species fed; negative where more leaves than is fed"),
+    "chlorine_slip": ("1", "chlorine that leaves over all chlorine fed"),
+    "chlorine_slip_mass": ("kg/h", "chlorine that leaves"),
+    "hydrogen_chloride_mass": ("kg/h", "hydrogen chloride that leaves"),
+    "products": ("kg/h", "every closed-shell species with carbon, as far as more leaves than is fed"),
+    "share_mol": ("1", "of the chlorinated organics formed, by mol"),
+    "share_mass": ("1", "of the chlorinated organics formed, by mass"),
+    "poly_share_mol": ("1", "share with two or more chlorine, by mol"),
+    "poly_share_mass": ("1", "share with two or more chlorine, by mass"),
+    "residence_time": ("s", "integral of A dz over the local volume flow"),
+    "space_time": ("s", "all gas volume, lit and unlit, over the inlet flow at inlet conditions"),
+    "pressure_drop": ("Pa", "inlet less outlet"),
+    "temperature_inlet": ("K", "mixed gas at the inlet, unreacted"),
+    "temperature_outlet": ("K", "gas at the outlet"),
+    "temperature_hottest": ("K", "hottest gas, mean of the cross-section"),
+    "temperature_hottest_position": ("m", "where the gas is hottest"),
+    "adiabatic_rise": ("K", "all chlorine used at the computed product split, from the mixed feed; no light, no cooling"),
+    "heat_reaction": ("W", "minus the integral of the sum of h omega at local temperature; photon power is apart"),
+    "heat_removed": ("W", "from the gas to the walls"),
+    "heat_lamp_to_gas": ("W", "from the sleeve to the gas, absorbed light apart"),
+    "heat_to_coolant": ("W", "through the shell to the coolant"),
+    "heat_transfer_coefficient": ("W/m2/K", "gas to coolant, on the inner face of the shell"),
+    "transfer_units": ("1", "U times shell area over the heat capacity flow at the inlet"),
+    "reynolds_number": ("1", "of the gas at the inlet of one vessel; of the stirrer in a tank"),
+    "sleeve_skin_temperature": ("K", "gas side of the sleeve where the lit gas is hottest"),
+    "mtsr": ("K", "temperature that the synthesis reaction can reach: leftover chlorine reacts where it is hottest"),
+    "light_off_temperature": ("K", "unreacted feed of this temperature runs away in the dark within 10 s"),
+    "exotherm_margin": ("K", "limits.hottest less the hottest gas"),
+    "dew_point_margin": ("K", "coldest surface less the dew point of the gas there, the smallest one"),
+    "light_electrical": ("W", "drawn from the mains by all lamps"),
+    "light_radiant": ("W", "light of all listed lines at the end of life of the lamps"),
+    "light_into_gas": ("W", "light that passes the sleeves"),
+    "light_absorbed": ("W", "light that chlorine absorbs"),
+    "photons_absorbed": ("mol/s", "photons that chlorine absorbs, from the mean rate of photolysis"),
+    "chain_length": ("1", "HCl formed per Cl atom started, by light and by heat, gross"),
+    "quantum_yield": ("1", "HCl formed per photon absorbed; none where thermal starts exceed one tenth"),
+    "light_order": ("1", "d ln(HCl rate)/d ln J, molecules fixed and radicals stationary, mean over the HCl formed in light"),
+    "thermal_start_share": ("1", "Cl atoms started by heat over all Cl atoms started, gross"),
+    "class_inlet": ("word", "class of the mixed inlet: OUTSIDE (estimate), MARGIN, UNKNOWN or INSIDE"),
+    "class_worst": ("word", "worst class of feeds, inlet, injectors and stations; UNKNOWN counts as INSIDE"),
+    "mixtures": ("list", "one entry a feed, inlet, injector and worst station, see MIXTURE"),
+    "steady_states": ("list", "of a stirred tank, coldest first, see STATE"),
+}
+MIXTURE = {  # every entry of `mixtures`
+    "where": ("word", "feed, mixed inlet, injector or worst station"),
+    "fuel": ("1", "mole fraction of fuel"),
+    "chlorine": ("1", "mole fraction of chlorine"),
+    "inert": ("1", "mole fraction of the rest"),
+    "ratio": ("1", "fuel to chlorine, mol/mol"),
+    "temperature": ("K", "of the mixture"),
+    "class": ("word", "OUTSIDE (estimate), MARGIN, UNKNOWN or INSIDE"),
+    "class_worst_corner": ("word", "worst class within the errors of the meters; null without [meters]"),
+    "corner": ("word", "which corner that is"),
+    "meter_error_at_change": ("1", "error of both meters at which the class changes"),
+    "margin": ("1", "distance to the estimated range, in mole fraction of chlorine"),
+    "adiabatic_temperature": ("K", "when chlorine replaces hydrogen until one of them is used up"),
+    "calculated_only": ("yes or no", "whether the range of a fuel is calculated, not measured"),
+    "why": ("word", "what decides the class"),
+}
+STATE = {  # every entry of `steady_states`
+    "temperature": ("K", "of the tank"),
+    "chlorine_slip": ("1", "chlorine that leaves over all chlorine fed"),
+    "stable": ("yes or no", "whether the tank returns to it"),
+    "growth_rate": ("1/s", "of the fastest disturbance; below nought it dies out"),
+}
+
 
 def quantity(value, unit, band=None):
     """
-    Return one number as the record that every output uses; nan and None become null.
+    Return one number as the record that every output uses; what is no finite number becomes null.
 
     Examples
     --------
     >>> quantity(350.0, "K")
     {'value': 350.0, 'unit': 'K'}
     """
-    number = None if value is None or value != value else float(value)
+    number = None if value is None or not isfinite(value) else float(value)
     record = {"value": number, "unit": unit}
     return record if band is None else record | {"band": dict(zip(("low", "mid", "high"), band, strict=True))}
 
@@ -44,7 +113,7 @@ def by_species(flows, unit):
 @dataclass(frozen=True)
 class Result:
     """
-    A rated case: `results[name]` by the names that the README lists, and all that stands beside them.
+    A rated case: `results[name]` by the names in `NAMES`, and all that stands beside them.
 
     Parameters
     ----------
@@ -117,7 +186,7 @@ class Result:
     def to_json(self):
         """Return the whole result as one JSON object."""
         record = asdict(self) | {"format": FORMAT, "verdicts": [v._asdict() for v in self.verdicts]}
-        return json.dumps(record, indent=1, ensure_ascii=False, allow_nan=False)
+        return json.dumps(record, indent=1, allow_nan=False)
 
 
 def from_json(text, where="the saved result"):
@@ -131,9 +200,10 @@ def from_json(text, where="the saved result"):
     """
     try:
         record = json.loads(text)
-        if record.pop("format") != FORMAT:
+        if record.pop("format", FORMAT) != FORMAT:
             raise CaseError(f"{where}: was saved by another version of the program; rate the case again")
-        record["verdicts"] = tuple(Verdict(**verdict) for verdict in record["verdicts"])
-        return Result(**record)
+        record["verdicts"] = [Verdict(**verdict) for verdict in record["verdicts"]]
+        listed = {item.name for item in fields(Result) if item.type is tuple}
+        return Result(**{key: tuple(value) if key in listed else value for key, value in record.items()})
     except (ValueError, KeyError, TypeError, AttributeError) as error:
         raise CaseError(f"{where}: is not a saved result ({error}); save one with: reactor rate CASE --save FILE") from None

@@ -107,7 +107,9 @@ class Vessel:
     shell_wall: float | None = assume(
         kinds.LENGTH.within(1e-5, 0.5, "3 mm"), None, "the resistance of the wall itself is left out"
     )
-    shell_material: str = assume(Text(), "not stated", "its temperature limit is not assessed")
+    shell_material: str = assume(
+        Listed("a wall material", "heat/walls.csv", "material"), "not stated", "its temperature limit is not assessed"
+    )
     stirring: float | None = leave(kinds.FREQUENCY)
     impeller: float | None = assume(
         kinds.LENGTH.within(1e-3, 20.0, "100 mm"),

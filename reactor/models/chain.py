@@ -4,7 +4,8 @@ import numpy as np
 
 from reactor.kernel.rates import Rates
 
-NEWTON = 12  # steps that bring the radicals to rest before their answer to light is read
+NEWTON = 40  # steps that bring the radicals to rest before their answer to light is read
+RECOMBINATION = 1e6  # m^3/mol/s; a low termination constant, so that the search starts from too many radicals
 
 
 def light_order(profile, gas, wall_loss):
@@ -30,7 +31,11 @@ def light_order(profile, gas, wall_loss):
     acid, radical = gas.index["HCl"], np.flatnonzero(gas.radical)
     order = np.full(len(profile.z), np.nan)
     for i, (c, T, J) in enumerate(zip(profile.concentrations, profile.temperature, profile.photolysis, strict=True)):
-        if J > 0 and c[gas.index["Cl2"]] > 0:
+        chlorine = c[gas.index["Cl2"]]
+        if J > 0 and chlorine > 0:
+            plenty = np.sqrt(J * chlorine / RECOMBINATION)
+            if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: a chain without an end has no answer
+                c[radical] = plenty
             order[i] = _order(rates, c.copy(), T, J, wall_loss, acid, radical)
     return order
 

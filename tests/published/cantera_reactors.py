@@ -120,10 +120,8 @@ def stirred_tank(chemistry, composition, T, P, flow, volume, heat, start=None, r
     tank = Vessel(gas, clone=False)
     tank.volume = volume
     tank.light(gas, number, chemistry, heat)
-    outside = ct.Reservoir(ct.Solution(str(chemistry.path), "gas-lit", transport_model=None), clone=False)
+    outside = ct.Reservoir(chemistry.gas(composition, T, P)[0], clone=False)
     inflow = ct.MassFlowController(ct.Reservoir(feed, clone=False), tank, mdot=flow)
-    outside.contents.TPX = T, P, composition
-    outside.syncState()
     ct.PressureController(tank, outside, primary=inflow, K=flow / 10.0)
     net = ct.ReactorNet([tank])
     net.rtol, net.atol, net.max_steps = rtol, atol, 200000

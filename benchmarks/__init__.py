@@ -1,0 +1,1 @@
+"""Figures of speed as ratios, each measured side by side in one run: `python -m benchmarks`."""
