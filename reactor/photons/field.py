@@ -17,12 +17,9 @@ from functools import cache
 
 import numpy as np
 
-from reactor.curve import Curve, tabulate
 from reactor.photons.bickley import bickley, bickley_deficit
+from reactor.photons.laws import ISOTROPIC, LAMBERTIAN, LAWS, RADIAL, SINE, VOLUMETRIC
 
-ISOTROPIC, SINE, LAMBERTIAN, RADIAL = "isotropic line", "sine-law line", "Lambertian cylinder", "radial"
-LAWS = (ISOTROPIC, LAMBERTIAN, SINE, RADIAL)
-FIRST, LAST, POINTS = np.log(1e-8), np.log(1e5), 2000  # grid of ln(tau); measured: 1e-8 relative
 
 
 @dataclass(frozen=True)
@@ -134,14 +131,6 @@ def transmitted(field, tau):
     return 4 / np.pi * sum(w * bickley(3, tau * m) for m, w in zip(*_chords(field), strict=True))
 
 
-@cache
-def tables(field):
-    """Return f/tau and the transmitted share as curves against ln(tau), 1e-8 to 1e5."""
-    per_depth: Curve = tabulate(lambda x: absorbed_per_depth(field, np.exp(x)), FIRST, LAST, POINTS)
-    passed: Curve = tabulate(lambda x: transmitted(field, np.exp(x)), FIRST, LAST, POINTS)
-    return per_depth, passed
-
-
 def fluence_rate(field, r, kappa):
     """
     Return the fluence rate per photon flow that enters the gas from one metre of lamp.
@@ -185,40 +174,3 @@ def _lambertian_fluence(field, r, kappa):
         path = r * cos_eta - np.sqrt(field.inside**2 - (a * np.sin(theta)) ** 2)
         total = total + weight * np.cos(theta) / cos_eta * bickley(2, kappa * path)
     return total / (np.pi * r)
-
-
-def unevenness(field, tau, share=1.0):
-    """
-    Return how far a fully mixed radical pool overstates the mean rate of a square-root chain: <sqrt J>^2/<J>.
-
-    Parameters
-    ----------
-    field : Field
-        Emission law and radii. [-]
-    tau : float or array, shape (n,)
-        Optical depth of the gap in each line. [-]
-    share : float or array, shape (n,)
-        Weight of each line in the photolysis, that is its photon flow times its cross-section. [-]
-
-    Returns
-    -------
-    ratio : float
-        1 in an even field, smaller where the light stays near the sleeve; means over the gas volume. [-]
-
-    Examples
-    --------
-    >>> print(f"{unevenness(Field(ISOTROPIC, 0.01, 0.03), 1.0) ** 0.5:.4f}")
-    0.9347
-    """
-    tau = np.atleast_1d(np.asarray(tau, float))
-    if not tau.size:
-        return 1.0
-    gap = field.outside - field.inside
-    s, weight = _gauss(48)
-    stretch = np.log1p(np.max(tau)) + 1e-3  # crowds the nodes at the sleeve when the gas is thick
-    place = np.expm1(stretch * s) / np.expm1(stretch)
-    r = field.inside + gap * place
-    volume = weight * np.exp(stretch * s) * r
-    G = fluence_rate(field, r[:, None], tau / gap) @ np.broadcast_to(np.asarray(share, float), tau.shape)
-    total = volume.sum()
-    return float((volume @ np.sqrt(G) / total) ** 2 / (volume @ G / total))
