@@ -14,7 +14,8 @@ class Beam(NamedTuple):
     `entering` [mol/m/s] enters the gas per metre, `energy` [J/mol] is carried by a mole of photons, `sigma`
     (lines, degree + 1) is the cross-section [m^2] as a polynomial in (T - middle)/half, `path` [m] the gas gap,
     `area` [m^2] the gas cross-section, `absorbed` and `transmitted` curves against ln(optical thickness):
-    absorbed share over thickness, and share that reaches the outer wall. A fixed rate [1/s] replaces it all.
+    absorbed share over thickness, and share that is not absorbed. A fixed rate [1/s] replaces it all. `even`, a curve
+    against ln(mean thickness), is the rate that counts for the radicals over the mean rate (None: one mixed pool).
     """
 
     entering: np.ndarray
@@ -27,10 +28,11 @@ class Beam(NamedTuple):
     absorbed: object
     transmitted: object
     fixed: float | None = None
+    even: object | None = None
 
 
 class Absorbed(NamedTuple):
-    """Photolysis rate J [1/s], dJ/dc, dJ/dT; photons and watts absorbed and passed on, per metre."""
+    """Photolysis rate J [1/s] for the radicals, dJ/dc, dJ/dT; photons, watts (true mean) absorbed and passed, per metre."""
 
     J: float
     by_c: float
@@ -71,13 +73,26 @@ def absorb(beam, c, T):
     by_T = rate * (g + dg) * sigma_T / sigma
     by_c = rate @ dg / max(c, THINNEST)
     photons = rate * g * c * beam.area
+    J, J_T = rate @ g, by_T.sum()
+    if beam.even is not None:
+        J, by_c, J_T = _evened(beam, c, sigma, sigma_T, (J, by_c, J_T))
     return Absorbed(
-        J=rate @ g,
+        J=J,
         by_c=by_c,
-        by_T=by_T.sum(),
+        by_T=J_T,
         photons=photons.sum(),
         power=photons @ beam.energy,
         power_by_c=(rate * (g + dg) * beam.area) @ beam.energy,
         power_by_T=(by_T * c * beam.area) @ beam.energy,
         outer_wall=beam.entering @ beam.transmitted(log_tau)[0],
     )
+
+
+def _evened(beam, c, sigma, sigma_T, mean):
+    """Return J and its slopes for radicals that stay where they arise, from those of the mean rate."""
+    J, by_c, by_T = mean
+    first, second = beam.entering @ sigma, beam.entering @ sigma**2
+    depth = AVOGADRO * beam.path * second / first
+    ratio, slope = beam.even(float(np.log(max(c * depth, THINNEST))))
+    depth_T = 2 * (beam.entering @ (sigma * sigma_T)) / second - (beam.entering @ sigma_T) / first
+    return J * ratio, by_c * ratio + J * slope / max(c, THINNEST), by_T * ratio + J * slope * depth_T

@@ -17,7 +17,7 @@ class Plant(NamedTuple):
     What the rooms make of a case, for one tube or tank.
 
     `wall_loss` [1/s] takes chlorine atoms; `coolant` [W/K] is the heat capacity flow of the coolant (inf: its
-    temperature is constant).
+    temperature is constant). `even`: for local radical pools one curve a section, see `assemble.beams`.
     """
 
     gas: object
@@ -25,6 +25,7 @@ class Plant(NamedTuple):
     wall: object
     wall_loss: float
     coolant: float
+    even: list | None = None
 
 
 def streams(case, gas):
@@ -79,23 +80,28 @@ def mixed_feed(case, gas):
     return mix("mixed feed", everything, gas, case.vessel.pressure)
 
 
-def beams(light, fixed):
-    """Return one beam per section of constant light; a fixed J [1/s] acts where lamps are lit, else everywhere."""
+def beams(light, fixed, even=None):
+    """
+    Return one beam per section of constant light; a fixed J [1/s] acts where lamps are lit, else everywhere.
+
+    `even`: for local radical pools one curve a section, of the rate that counts over the mean rate.
+    """
     lamps = bool(np.any(light.into_gas))
     energy = light.photon_energy if lamps else np.array([PHOTON_365])
     return [
         Beam(np.asarray(entering), energy, light.sigma, SIGMA_MIDDLE, SIGMA_HALF, light.path, light.area,
-             light.absorbed, light.transmitted, fixed if np.any(entering) or not lamps else None)
-        for entering in light.into_gas
+             absorbed, transmitted, fixed if np.any(entering) or not lamps else None, ratio)
+        for entering, absorbed, transmitted, ratio in zip(light.into_gas, light.absorbed, light.transmitted,
+                                                          even or [None] * len(light.absorbed), strict=True)
     ]
 
 
-def sections(case, gas, light):
+def sections(case, gas, light, even=None):
     """Return the kernel's sections of one tube: broken at lamp edges and injectors."""
     tubes = case.vessel.parallel
     stops = dict(injections(case, gas))
     edges = sorted({*(float(e) for e in light.edges), *stops, 0.0, case.vessel.length})
-    lit = beams(light, case.chemistry.photolysis_rate)
+    lit = beams(light, case.chemistry.photolysis_rate, even)
     none = np.zeros(len(gas.species))
     found = []
     for start, stop in zip(edges, edges[1:], strict=False):

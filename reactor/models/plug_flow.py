@@ -54,7 +54,7 @@ def _tube(case, plant):
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
     return Tube(rates, gas.molar_mass, plant.wall_loss, gas.index["Cl2"], gas.start, light.area,
                 wall.hydraulic_diameter, wall.friction, wall.conductance, wall.lamp_share, sign * plant.coolant,
-                assemble.sections(case, gas, light))
+                assemble.sections(case, gas, light, plant.even))
 
 
 def _against(run, entering, hot, look_further):

@@ -33,7 +33,7 @@ def solve(case, plant, look_further=True):
     """
     gas = plant.gas
     feed = assemble.mixed_feed(case, gas)
-    tank = _tank(case, plant, feed)
+    tank = _tank(case, plant, feed, plant.even)
     budget = assemble.budget(case)
     low, high = _reach(tank, feed, gas)
     states = steady_states(tank, low, high, budget)
@@ -41,16 +41,14 @@ def solve(case, plant, look_further=True):
     return _profile(case, gas, tank, feed, states, number, remark)
 
 
-def _tank(case, plant, feed):
+def _tank(case, plant, feed, even=None):
     gas, light, wall, share = plant.gas, plant.light, plant.wall, 1.0 / case.vessel.parallel
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
-    lengths = np.diff(light.edges) / case.vessel.length
-    lit = assemble.beams(light, case.chemistry.photolysis_rate)
-    beam = lit[0]._replace(entering=lengths @ np.array([beam.entering for beam in lit]),
-                           fixed=case.chemistry.photolysis_rate)
+    beam = assemble.beams(light, case.chemistry.photolysis_rate, even)[0]
+    beam = beam._replace(fixed=case.chemistry.photolysis_rate)
     return Tank(rates, gas.molar_mass, plant.wall_loss, gas.index["Cl2"], gas.start, light.area * case.vessel.length,
                 case.vessel.length, case.vessel.pressure, feed.moles * share, feed.enthalpy(gas) * share, beam,
-                float(lengths @ light.sleeve_heat), wall.conductance, wall.lamp_share, plant.coolant,
+                float(light.sleeve_heat[0]), wall.conductance, wall.lamp_share, plant.coolant,
                 case.cooling.inlet or feed.temperature)
 
 

@@ -11,7 +11,7 @@ import numpy as np
 from reactor.curve import Curve
 
 STEP, BELOW, ABOVE = 0.06, np.log(1e-5), np.log(1e4)  # grid of ln(path over the gap)
-FIRST, LAST, POINTS = np.log(1e-8), np.log(1e5), 640  # grid of ln(optical thickness) of the curves
+FIRST, LAST, POINTS = np.log(1e-8), np.log(1e5), 420  # grid of ln(optical thickness) of the curves
 LENGTHS = np.concatenate(([0.0], np.exp(np.arange(BELOW, ABOVE + STEP / 2, STEP))))
 
 

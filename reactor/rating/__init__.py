@@ -1,7 +1,7 @@
 """One case in, one `Result` out: the whole calculation, read from the top."""
 
 from reactor import chemistry
-from reactor.models import SOLVERS
+from reactor.models import SOLVERS, pools
 from reactor.models.assemble import mixed_feed
 from reactor.rating import account, figures, hazard, identity, judge
 from reactor.rating.bands import bands
@@ -33,11 +33,11 @@ def rate(case):
     gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
     light = lamps(case)
     equipment = plant(case, gas, light)
-    profile = SOLVERS[case.vessel.kind](case, equipment)  # chemistry, light and heat together
+    equipment, profile, mixed = pools.settle(case, equipment, SOLVERS[case.vessel.kind])  # light, chemistry, heat
     feed = mixed_feed(case, gas)
     dangers = hazard.assess(case, equipment, profile, feed)
     results = figures.headline(case, equipment, profile, feed) | dangers.results
-    results = bands(case, equipment, results)
+    results = bands(case, equipment, results) | figures.bracket(profile, mixed, gas)
     gaps = closures(profile, gas, light.entering.sum() * case.vessel.parallel)
     verdicts = judge.verdicts(case, equipment, profile, results, gaps, dangers)
     return Result(

@@ -12,31 +12,39 @@ def light_ledger(light, profile, case):
     """Return the light account of all tubes as rows {name, part_of, power, photons} [W], [mol/s]."""
     if not len(light.wavelength):
         return ()
-    absorbed, outer = per_line(light, profile)
-    found = photons.ledger(light, absorbed, outer, parallel=case.vessel.parallel)
+    found = photons.ledger(light, *per_line(light, profile, case.vessel.parallel), parallel=case.vessel.parallel)
     return tuple({"name": r.name, "part_of": r.part_of, "power": r.watts, "photons": r.photons} for r in found.rows)
 
 
-def per_line(light, profile):
+def per_line(light, profile, parallel):
     """
-    Return photons absorbed and photons at the outer wall of one tube, by line [mol/s].
+    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube, by line [mol/s].
 
-    Both shares are integrated over the same stations, so that together they are what enters.
+    The lines are those of the lamp, not the few that the model follows; what is absorbed is shared among them by
+    their own cross-sections and adds up to the model's own total.
     """
-    chlorine = profile.species.index("Cl2")
+    spectrum, chlorine = light.spectrum, profile.species.index("Cl2")
     c, T = profile.concentrations[:, chlorine], profile.temperature
     t = np.clip((T - 550.0) / 350.0, -1.0, 1.0)
-    sigma = np.array([np.polynomial.polynomial.polyval(t, row) for row in light.sigma]).T
+    sigma = np.vander(t, spectrum.sigma.shape[1], increasing=True) @ spectrum.sigma.T
     tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
-    share = light.absorbed(np.log(tau))[0] * tau
-    if len(profile.z) == 1:
-        mean = share[0]
-        return mean * light.entering, (1 - mean) * light.entering
-    absorbed = np.zeros(len(light.wavelength))
-    for entering, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
+    entering = np.diff(light.edges) @ spectrum.into_gas
+    absorbed, ends = np.zeros((2, len(entering)))
+    lots = zip(spectrum.into_gas, light.absorbed, light.ends, light.edges, light.edges[1:], strict=False)
+    for flow, share, out, start, stop in lots:
+        if len(profile.z) == 1:
+            absorbed += flow * (stop - start) * share(np.log(tau[0]))[0] * tau[0]
+            ends += flow * (stop - start) * out(np.log(tau[0]))[0]
+            continue
         inside = (profile.z >= start) & (profile.z <= stop)
-        absorbed += entering * np.trapezoid(share[inside], profile.z[inside], axis=0)
-    return absorbed, light.entering - absorbed
+        log_tau, z = np.log(tau[inside]), profile.z[inside]
+        absorbed += flow * np.trapezoid(share(log_tau)[0] * tau[inside], z, axis=0)
+        ends += flow * np.trapezoid(out(log_tau)[0], z, axis=0)
+    total = profile.total("photons") / parallel
+    if absorbed.sum() > 0 and total > 0:
+        absorbed = np.minimum(absorbed * total / absorbed.sum(), entering)
+    ends = np.minimum(ends, entering - absorbed)
+    return absorbed, entering - absorbed - ends, ends
 
 
 def streams(profile, gas):
