@@ -15,7 +15,8 @@ class Beam(NamedTuple):
     (lines, degree + 1) is the cross-section [m^2] as a polynomial in (T - middle)/half, `path` [m] the gas gap,
     `area` [m^2] the gas cross-section, `absorbed` and `transmitted` curves against ln(optical thickness):
     absorbed share over thickness, and share that is not absorbed. A fixed rate [1/s] replaces it all. `even`, a curve
-    against ln(mean thickness), is the rate that counts for the radicals over the mean rate (None: one mixed pool).
+    against ln(mean thickness), is the rate that counts for the radicals over the mean rate (None: one mixed pool). `along`,
+    a curve of position [m], multiplies `entering` (None: constant light).
     """
 
     entering: np.ndarray
@@ -29,6 +30,7 @@ class Beam(NamedTuple):
     transmitted: object
     fixed: float | None = None
     even: object | None = None
+    along: object | None = None
 
 
 class Absorbed(NamedTuple):
@@ -57,8 +59,8 @@ def cross_sections(beam, T):
     return beam.sigma @ powers, inside * (beam.sigma[:, 1:] @ slopes) / beam.half
 
 
-def absorb(beam, c, T):
-    """Return what chlorine at `c` [mol/m^3] and `T` [K] makes of the light, as `Absorbed`."""
+def absorb(beam, c, T, z=0.0):
+    """Return what chlorine at `c` [mol/m^3] and `T` [K] makes of the light at position `z` [m], as `Absorbed`."""
     if beam.fixed is not None:
         photons, energy = beam.fixed * c * beam.area, float(beam.energy.mean())
         by_c = beam.fixed * beam.area * energy
@@ -69,7 +71,8 @@ def absorb(beam, c, T):
     kappa = sigma * AVOGADRO
     log_tau = np.log(np.maximum(kappa * c * beam.path, THINNEST))
     g, dg = beam.absorbed(log_tau)
-    rate = beam.entering * kappa * beam.path / beam.area  # of each line in the thin limit g = 1
+    entering = beam.entering if beam.along is None else beam.entering * max(beam.along(float(z))[0], 0.0)
+    rate = entering * kappa * beam.path / beam.area  # of each line in the thin limit g = 1
     by_T = rate * (g + dg) * sigma_T / sigma
     by_c = rate @ dg / max(c, THINNEST)
     photons = rate * g * c * beam.area
@@ -84,7 +87,7 @@ def absorb(beam, c, T):
         power=photons @ beam.energy,
         power_by_c=(rate * (g + dg) * beam.area) @ beam.energy,
         power_by_T=(by_T * c * beam.area) @ beam.energy,
-        outer_wall=beam.entering @ beam.transmitted(log_tau)[0],
+        outer_wall=entering @ beam.transmitted(log_tau)[0],
     )
 
 

@@ -20,7 +20,7 @@ ABSOLUTE = 1e-15  # mol/kg; small and fixed: it must not grow with the relative 
 
 
 class Section(NamedTuple):
-    """A stretch of tube with constant light; `injected` [mol/s] at `heat` [W] enters at its start."""
+    """A stretch of tube under one beam; `injected` [mol/s] at `heat` [W] enters at its start."""
 
     start: float
     stop: float
@@ -90,7 +90,7 @@ class Balance:
         """Return dy/dz."""
         tube, section = self.tube, self.section
         n, T, Tc, P, density, c = self.gas(y)
-        light = absorb(section.beam, c[tube.chlorine], T)
+        light = absorb(section.beam, c[tube.chlorine], T, z)
         q_f, q_r = tube.rates.both(c, T, light.J, tube.wall_loss)
         production = (q_f - q_r) @ tube.rates.net
         cp, _, h, _ = tube.rates.thermo.at(T)
@@ -113,7 +113,7 @@ class Balance:
         """Return d(dy/dz)/dy; the running totals feed nothing back, their own columns are zero."""
         tube, section, K = self.tube, self.section, self.species
         n, T, Tc, P, density, c = self.gas(y)
-        light = absorb(section.beam, c[tube.chlorine], T)
+        light = absorb(section.beam, c[tube.chlorine], T, z)
         w, by_c, by_T, by_J, _ = tube.rates.derivatives(c, T, light.J, tube.wall_loss)
         by_c[:, tube.chlorine] += by_J * light.by_c
         by_T = by_T + by_J * light.by_T

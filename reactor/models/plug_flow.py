@@ -128,8 +128,8 @@ def _photolysis(tube, path, K):
     starts = np.array([section.start for section in tube.sections])
     number = np.clip(np.searchsorted(starts, path.z, side="right") - 1, 0, None)
     found = []
-    for place, y in zip(number, path.state, strict=True):
+    for place, z, y in zip(number, path.z, path.state, strict=True):
         n, T, P = y[:K], y[K], y[K + 2]
         c = n[tube.chlorine] * P / (R * T * n.sum())
-        found.append(absorb(tube.sections[place].beam, c, T).J)
+        found.append(absorb(tube.sections[place].beam, c, T, z).J)
     return np.array(found)

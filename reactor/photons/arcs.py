@@ -1,10 +1,11 @@
 r"""
 Finite arcs: where along the tube their light enters the gas, and what the ends take.
 
-A photon of slope phi that leaves the lamp at z' enters the gas at z' + h tan(phi), h being the way across. It is
-counted at the station where it is half-way through its first stretch of gas, so its path is that of the true ray,
-cut at the ends of the tube, while kappa is that of one station. In a gas of even kappa all totals are exact;
-along a bleaching tube the neglected shift of second order is small (see the tests, which compare it with ray tracing).
+A photon of slope phi that leaves the lamp at z' enters the gas at z' + h tan(phi), h being the way across, and is
+taken up along its way from there to the wall or to an end of the tube. The spread of these ways gives the totals,
+exact in a gas of even kappa. Along the tube the light is laid out as a thin gas takes it up (`profile`), and each
+station absorbs the share that belongs to its own kappa. What is neglected is that a thick gas takes light up nearer to
+where it enters: the tests compare with ray tracing through a gas that bleaches.
 
 A finite isotropic line on the axis of a clear gas, at radius r and height z from the middle of an arc of length L:
 G/S = [atan((z + L/2)/r) - atan((z - L/2)/r)]/(4 pi r).
@@ -14,10 +15,12 @@ from typing import NamedTuple
 
 import numpy as np
 
+from reactor.curve import Curve
 from reactor.photons import spread
 from reactor.photons.laws import gauss
 
 NEAR = (0.3, 0.8, 1.6, 3.2)  # breaks of the sections beside the end of an arc, over the way to mid-gap
+FINE, LEAST, MOST = 0.5, 24, 800  # step of the profile over the way to mid-gap; fewest and most steps
 INNER = 3  # nodes in each overlap of an arc's light with a section
 
 
@@ -161,3 +164,53 @@ def _stretch(rays, m, leave, photons, parts):
     lost = through & follows & (leave <= next_reach)
     parts["ends"].append((depth, photons * following * lost, number))
     parts["ends"].append((np.clip(before + leave - reach, before, after), photons * weight * cut, number))
+
+
+def profile(rays, slope, weight, arc, grid):
+    """
+    Return how light is taken up along the tube by a thin gas, per photon that passes the window.
+
+    Each ray is taken up evenly along its way through the gas, from the entry to the wall or to the end of the tube.
+
+    Parameters
+    ----------
+    rays, slope, weight, arc
+        As for `along`.
+    grid : array, shape (m,)
+        Even, from 0 to the length of the tube. [m]
+    """
+    up = _taken(rays, slope, weight, arc, grid)
+    length = float(grid[-1])
+    return up + _taken(rays, slope, weight, (length - arc[1], length - arc[0]), grid)[::-1]
+
+
+def _taken(rays, slope, weight, arc, grid):
+    """Return what the light that goes up leaves at each place."""
+    t = np.tan(slope)[None, :, None]
+    start = np.maximum(arc[0], -middle(rays)[0][:, None] * t[..., 0])[..., None]  # lamp below which no ray enters
+    total = np.zeros(len(grid))
+    for m in _by_step(rays):
+        first, last = rays.reach[m][:, None, None], (rays.reach + rays.after - rays.before)[m][:, None, None]
+        low, high = np.maximum(grid - last * t, start[rays.ray[m]]), np.minimum(grid - first * t, arc[1])
+        level = (rays.weight[m][:, None] * weight[rays.ray[m]] / np.cos(slope))[..., None]
+        flat = (grid >= arc[0]) & (grid <= arc[1])
+        steep = np.maximum(high - low, 0.0) / np.maximum(t, 1e-12)
+        total += (level * np.where(t > 1e-9, steep, (last - first) * flat)).sum(axis=(0, 1))
+    return total / (2 * (arc[1] - arc[0]))
+
+
+def smooth(density, grid):
+    """Return a density at the places of an even grid as a curve over its mean."""
+    from scipy.interpolate import CubicSpline
+
+    step = float(grid[1] - grid[0])
+    slope = CubicSpline(grid, density)(grid, 1)
+    area = step * (density.sum() - (density[0] + density[-1]) / 2) + step**2 / 12 * (slope[0] - slope[-1])
+    scale = float(grid[-1]) / area
+    return Curve(0.0, step, density * scale, slope * scale)
+
+
+def places(reach, length):
+    """Return an even grid that is fine enough for the light of arcs at `reach` [m] from the middle of the gas."""
+    steps = int(np.clip(np.ceil(length / (FINE * max(reach, 1e-9))), LEAST, MOST))
+    return np.linspace(0.0, length, steps + 1)

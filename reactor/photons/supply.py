@@ -5,9 +5,10 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
+from reactor.curve import Curve
 from reactor.photons import arcs, chlorine, even, lot, merge, remarks, spread, windows
 from reactor.photons.energy import photon_energy
-from reactor.photons.laws import SLOPES, slopes
+from reactor.photons.laws import RADIAL, SLOPES, slopes
 from reactor.photons.rays import grouped
 from reactor.photons.shapes import rays_of
 
@@ -43,7 +44,9 @@ class Light:
     photon_energy [J/mol], quantum_yield [-]: (n,). sigma: (n, d) polynomials [m2] in t = (T - 550 K)/350 K. path
     [m]: what optical thickness is measured across; area of the gas across the tube [m2]. Curves against ln(tau), one
     a section: absorbed, f/tau; transmitted, share that is not absorbed; ends, share that leaves by the ends. edges:
-    (s + 1,) positions [m]. into_gas: (s, n) photons entering the gas per metre of tube [mol/m/s]. sleeve_heat: (s,)
+    (s + 1,) positions [m]. into_gas: (s, n) photons entering the gas per metre of tube [mol/m/s], mean of the section.
+    along: curve of position, the entering light over its mean along the whole tube, which then replaces the mean of
+    the sections; None: the light is even within each section. sleeve_heat: (s,)
     lamp heat and light caught in sleeve and deposit, per metre [W/m]. law, lamp_radius: of the lamps. capture: share
     of what they send that reaches the window. accounts: the ledger of one tube, from mains to into-gas.
     """
@@ -58,6 +61,7 @@ class Light:
     ends: tuple
     edges: np.ndarray
     into_gas: np.ndarray
+    along: Curve | None
     sleeve_heat: np.ndarray
     shape: Any
     law: str
@@ -135,31 +139,62 @@ def light(lamps, sleeve, shape, length):
     arrive = rays.share[:, None] * weight / rays.share.sum()
     behind, passed = windows.passed(sleeve, line, rays.slant[:, None] * np.cos(phi), arrive)
     slant = behind(bright)
-    borders = _borders(sources, rays, shape, length)
+    reach = float(rays.share @ arcs.middle(rays)[1] / rays.share.sum())
+    borders = arcs.edges({(s.start, s.stop) for s in sources}, reach, length)
     each_along = [arcs.along(rays, phi, slant, (s.start, s.stop), borders, shape.gap) for s in sources]
     photons = [(s.radiant * passed * rays.capture / photon_energy(line))[followed] for s in sources]
-    raw = _per_metre([a.entering for a in each_along], photons, borders, followed.sum())
+    flow = [p.sum() for p in photons]
+    along = None
+    if shape.name == "immersed lamps" or (law != RADIAL and _alike(photons)):
+        borders, each_along = _ends_of(sources, shape, length), [_whole(a) for a in each_along]
+        along = None if shape.name == "immersed lamps" or not any(flow) else _profile(
+            rays, phi, slant, sources, flow, arcs.places(reach, length))  # fmt: skip
+    raw = _per_metre([_within(a, along, borders) for a in each_along], photons, borders, followed.sum())
     lines = merge.merged(line[followed], raw.sum(axis=0))
-    absorbed, transmitted, ends = _curves(each_along, [p.sum() for p in photons], len(borders) - 1)
+    absorbed, transmitted, ends = _curves(each_along, flow, len(borders) - 1)
     spectrum = Spectrum(line[followed], chlorine.sigma_fit(line[followed]), raw, bright[followed] * rays.capture, passed[followed])
     entering = sum((p * a.entering.sum() for p, a in zip(photons, each_along, strict=True)), 0 * line[followed])
     flows = (radiant, passed * rays.capture, entering, followed, bands)
     heat = _heat(sources, shape, borders, np.where(followed, (1 - passed) * rays.capture, 0.0))
     return Light(
         lines.energy, lines.quantum_yield, lines.sigma, shape.gap, shape.area, absorbed, transmitted, ends, borders,
-        raw @ lines.mix.T, heat, shape, law, radius, rays.capture, slant, spectrum,
+        raw @ lines.mix.T, along, heat, shape, law, radius, rays.capture, slant, spectrum,
         accounts=_accounts(sources, line, rays.capture, flows),
         cited=remarks.cited(known, sleeve, law, shape),
         notes=remarks.notes(lamps, known, sleeve, (law, radius, shape), (line, radiant, bands), length),
     )  # fmt: skip
 
 
-def _borders(sources, rays, shape, length):
-    """Return the borders of the sections; a stirred vessel is one section."""
-    if shape.name == "immersed lamps" or not sources or not len(rays.ray):
-        return np.array([0.0, length])
-    reach = float(rays.share @ arcs.middle(rays)[1] / rays.share.sum())
-    return arcs.edges({(s.start, s.stop) for s in sources}, reach, length)
+def _alike(photons):
+    """Return whether all lamps have the same spectrum, so that one profile along the tube holds for every line."""
+    shapes = [flow / flow.sum() for flow in photons if flow.sum() > 0]
+    return all(np.allclose(shape, shapes[0], rtol=1e-9, atol=1e-12) for shape in shapes)
+
+
+def _ends_of(sources, shape, length):
+    """Return the borders between lit and dark stretches; a stirred vessel is one section."""
+    ends = set() if shape.name == "immersed lamps" else {z for s in sources for z in (s.start, s.stop)}
+    return np.array([0.0, *sorted(z for z in ends if 1e-9 < z < length - 1e-9), length])
+
+
+def _whole(one):
+    """Return the light of an arc over the whole tube as one section."""
+    return arcs.Along(*(np.asarray(part).sum(axis=0, keepdims=True) for part in one))
+
+
+def _profile(rays, slope, slant, sources, flow, grid):
+    """Return the light of all arcs along the tube over its mean, as a curve of position."""
+    taken = sum(p * arcs.profile(rays, slope, slant, (s.start, s.stop), grid) for s, p in zip(sources, flow, strict=True))
+    return arcs.smooth(taken, grid)
+
+
+def _within(one, along, borders):
+    """Return the share of an arc's light in each section."""
+    if along is None or len(borders) == 2:
+        return one.entering
+    fine = [np.linspace(a, b, 201) for a, b in zip(borders, borders[1:], strict=False)]
+    part = np.array([np.trapezoid(along(z)[0], z) for z in fine])
+    return one.entering.sum() * part / part.sum()
 
 
 def _per_metre(entering, photons, borders, lines):
@@ -173,6 +208,8 @@ def _per_metre(entering, photons, borders, lines):
 def _curves(each_along, photons, sections):
     """Return the curves of absorbed share over tau, of what passes unabsorbed, and of what the ends take."""
     flows = [(p, a) for p, a in zip(photons, each_along, strict=True) if p > 0]
+    if flows and len(flows[0][1].entering) < sections:
+        return tuple(tuple(each * sections) for each in _curves(each_along, photons, 1))
     if not flows:
         one = np.zeros((1, len(spread.LENGTHS)))
         one[0, len(spread.LENGTHS) // 2] = 1.0

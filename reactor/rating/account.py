@@ -38,8 +38,9 @@ def per_line(light, profile, parallel):
             continue
         inside = (profile.z >= start) & (profile.z <= stop)
         log_tau, z = np.log(tau[inside]), profile.z[inside]
-        absorbed += flow * np.trapezoid(share(log_tau)[0] * tau[inside], z, axis=0)
-        ends += flow * np.trapezoid(out(log_tau)[0], z, axis=0)
+        here, mean = (np.ones(len(z)), flow) if light.along is None else (light.along(z)[0], entering / light.edges[-1])
+        absorbed += mean * np.trapezoid(here[:, None] * share(log_tau)[0] * tau[inside], z, axis=0)
+        ends += mean * np.trapezoid(here[:, None] * out(log_tau)[0], z, axis=0)
     total = profile.total("photons") / parallel
     if absorbed.sum() > 0 and total > 0:
         absorbed = np.minimum(absorbed * total / absorbed.sum(), entering)
