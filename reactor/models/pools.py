@@ -2,17 +2,21 @@
 Local radical pools: radicals stay where the light makes them, molecules are mixed over the gap.
 
 The kernel sees one pool fed by an effective J (`photons.even`), a function of the light order. The order comes out of
-the chemistry: it is read from the solved reactor, section by section, and the reactor is solved again until it rests.
-`explicit` is the reference: every cell of the gap has its own pool of all radicals.
+the chemistry: it is read from the solved reactor, as a function of the optical thickness that the gas has on its way,
+and the reactor is solved again until it rests. `explicit` is the reference: every cell of the gap has its own pool of
+all radicals.
 """
+
+from dataclasses import replace
 
 import numpy as np
 
 from reactor.models.chain import NEWTON, light_order
 from reactor.photons import even
 
-ROUNDS, REST = 4, 0.01  # solves at most, and the change of the light order at which they end
+ROUNDS, REST = 3, 0.003  # solves at most, and the change of J_eff/J at which they end
 WARM = 350.0  # K
+AVOGADRO = 6.02214076e23
 
 
 def settle(case, plant, solver):
@@ -29,48 +33,67 @@ def settle(case, plant, solver):
         Case and plant -> Profile.
     """
     mixed = profile = solver(case, plant)
-    light = plant.light
-    if case.chemistry.radicals != "local" or not np.any(light.into_gas) or case.chemistry.photolysis_rate is not None:
+    lit = np.any(plant.light.into_gas) and case.chemistry.photolysis_rate is None
+    if case.chemistry.radicals != "local" or not lit:
         return plant, profile, None
-    orders = np.full(len(light.edges) - 1, np.nan)
+    plant = plant._replace(light=cut(plant.light, [inject.position for inject in case.inject]))
     for _ in range(ROUNDS):
-        new = section_orders(profile, plant)
-        if np.all(np.abs(new - orders) < REST):
+        before, plant = plant.even, plant._replace(even=curves(plant, profile))
+        if before and change(plant, before, profile) < REST:
             break
-        orders = new
-        plant = plant._replace(even=curves(light, orders))
         profile = solver(case, plant)
     return plant, profile, mixed
 
 
-def section_orders(profile, plant):
-    """Return the light order of each section: mean over the HCl formed in it; 0.5 where none is."""
-    order = light_order(profile, plant.gas, plant.wall_loss)
-    edges = plant.light.edges
-    if len(order) == 1:
-        return np.clip(np.nan_to_num(order, nan=0.5), 0.5, 1.0)
-    made = np.maximum(np.diff(profile.moles[:, plant.gas.index["HCl"]]), 0.0)
-    middle, value = (profile.z[1:] + profile.z[:-1]) / 2, np.fmax(order[1:], order[:-1])
-    found = []
-    for start, stop in zip(edges, edges[1:], strict=False):
-        here = (middle >= start) & (middle <= stop) & np.isfinite(value) & (made > 0)
-        found.append(np.average(value[here], weights=made[here]) if here.any() else 0.5)
-    return np.clip(found, 0.5, 1.0)
+def cut(light, places):
+    """Return the light with further borders of its sections."""
+    edges = np.unique(np.concatenate((light.edges, [z for z in places if 0.0 < z < light.edges[-1]])))
+    number = np.clip(np.searchsorted(light.edges, edges[:-1], side="right") - 1, 0, len(light.edges) - 2)
+    curves_of = {name: tuple(getattr(light, name)[i] for i in number) for name in ("absorbed", "transmitted", "ends")}
+    spectrum = light.spectrum._replace(into_gas=light.spectrum.into_gas[number])
+    return replace(light, edges=edges, into_gas=light.into_gas[number], sleeve_heat=light.sleeve_heat[number],
+                   spectrum=spectrum, **curves_of)
 
 
-def curves(light, orders):
-    """Return the kernel's curve of J_eff/J for each section."""
-    t = (WARM - 550.0) / 350.0
-    sigma = light.sigma @ t ** np.arange(light.sigma.shape[1])
-    shared: dict = {}
+def sigma_at(light, T):
+    """Return the cross-sections of the lines at temperatures, (temperatures, lines) [m2]."""
+    t = np.clip((np.atleast_1d(T) - 550.0) / 350.0, -1.0, 1.0)
+    return np.vander(t, light.sigma.shape[1], increasing=True) @ light.sigma.T
+
+
+def depths(light, profile):
+    """Return ln of the mean optical thickness at every station, as the kernel sees it."""
+    sigma, weight = sigma_at(light, profile.temperature), light.entering
+    c = np.maximum(profile.concentrations[:, profile.species.index("Cl2")], 1e-30)
+    return np.log(c * AVOGADRO * light.path * (sigma**2 @ weight) / (sigma @ weight))
+
+
+def curves(plant, profile):
+    """Return the kernel's curve of J_eff/J for each section, with the light order found along the profile."""
+    light = plant.light
+    order, depth = light_order(profile, plant.gas, plant.wall_loss), depths(light, profile)
+    sigma = sigma_at(light, WARM)[0]
     found = []
-    for order, weight in zip(np.round(orders, 4), light.into_gas, strict=True):
-        shape = weight / weight.max() if weight.any() else weight
-        key = (float(order), tuple(np.round(shape, 6)))
-        if key not in shared:
-            shared[key] = even.curve(light.cells, weight, sigma, float(order))
-        found.append(shared[key])
+    for weight, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
+        here = np.isfinite(order) & ((len(order) == 1) | ((profile.z >= start) & (profile.z <= stop)))
+        if not here.any():
+            found.append(even.curve(light.cells, weight, sigma, 0.5))
+            continue
+        x, first = np.unique(depth[here], return_index=True)
+        known = order[here][first]
+        found.append(even.curve(light.cells, weight, sigma, lambda at, x=x, known=known: np.interp(at, x, known)))
     return found
+
+
+def change(plant, before, profile):
+    """Return the largest change of J_eff/J at the stations of a profile from one set of curves to the next."""
+    depth = depths(plant.light, profile)
+    pairs = zip(before, plant.even, plant.light.edges, plant.light.edges[1:], strict=False)
+    gaps = [0.0]
+    for old, new, start, stop in pairs:
+        here = (profile.z >= start) & (profile.z <= stop)
+        gaps.append(float(np.abs(old(depth[here])[0] - new(depth[here])[0]).max(initial=0.0)))
+    return max(gaps)
 
 
 def explicit(rates, c, T, J, volume, wall_loss, radical):
@@ -91,7 +114,7 @@ def explicit(rates, c, T, J, volume, wall_loss, radical):
         Share of each cell in the gas. [-]
     wall_loss : float
         Loss of chlorine atoms. [1/s]
-    radical : array
+    radical : sequence of int
         Numbers of the radicals.
     """
     production = np.zeros(len(c))

@@ -146,8 +146,8 @@ def curve(cells, weight, sigma, order):
         Photons of each line. [mol/s]
     sigma : array, shape (n,)
         Cross-section of each line. [m2]
-    order : float
-        Light order. [-]
+    order : float or callable
+        Light order, or a function that returns it at ln of the mean thickness. [-]
     """
     if not np.any(weight):
         return Curve(0.0, 1.0, np.ones(2), np.zeros(2))
@@ -158,7 +158,8 @@ def curve(cells, weight, sigma, order):
     each = cells.absorbed(tau.ravel()).reshape(len(cells.volume), *tau.shape)
     J = np.maximum(each @ share, 0.0) / cells.volume[:, None]
     J = J / (cells.volume @ J)
-    value = np.array([effective(column, cells.volume, order) for column in J.T])
+    orders = order(grid) if callable(order) else np.full(len(grid), order)
+    value = np.array([effective(*pair) for pair in zip(J.T, [cells.volume] * len(grid), orders, strict=True)])
     from scipy.interpolate import CubicSpline
 
     return Curve(float(FROM), float(grid[1] - grid[0]), value, CubicSpline(grid, value)(grid, 1))
