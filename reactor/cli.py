@@ -5,6 +5,7 @@ from pathlib import Path
 
 import click
 
+from reactor.cli_photons import photons
 from reactor.errors import CaseError, ConvergenceError, RangeError, ReactorError
 
 OK, VIOLATED, INPUT, NUMERICAL, RANGE, CLOSURE, INTERRUPTED = 0, 1, 2, 3, 4, 5, 130
@@ -28,6 +29,8 @@ def cli():
     A scoping calculation for engineers; it never says that a design or a mixture is harmless. Read SAFETY.md.
     """
 
+
+cli.add_command(photons)
 
 OVERRIDE = click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True,
                         help='Override one entry of the case, like --set vessel.length="2 m"; may be repeated.')

@@ -1,5 +1,6 @@
 """Light: lamp spectrum, sleeve, chlorine absorption, radiation field of each geometry, photon ledger."""
 
+from reactor.photons import chlorine
 from reactor.photons.account import ledger
 from reactor.photons.chlorine import cross_section, cross_section_grade
 from reactor.photons.lamps import lamp, spectrum_from_csv
@@ -13,6 +14,7 @@ __all__ = [
     "Immersed",
     "Light",
     "Tubes",
+    "chlorine",
     "cross_section",
     "cross_section_grade",
     "lamp",

@@ -1,0 +1,1 @@
+"""Figures: each takes a record and draws it; matplotlib is loaded inside."""
