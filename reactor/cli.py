@@ -9,8 +9,10 @@ from reactor.errors import CaseError, ConvergenceError, RangeError, ReactorError
 
 OK, VIOLATED, INPUT, NUMERICAL, RANGE, CLOSURE, INTERRUPTED = 0, 1, 2, 3, 4, 5, 130
 CODES = ((CaseError, INPUT), (RangeError, RANGE), (ConvergenceError, NUMERICAL), (ReactorError, INPUT))
-EPILOG = ("Exit codes: 0 done; 1 a limit is violated (results stand); 2 usage or input; 3 numerical failure; "
-          "4 outside the range of the data (with --strict); 5 a balance does not close; 130 interrupted.")
+EPILOG = (
+    "Exit codes: 0 done; 1 a limit is violated (results stand); 2 usage or input; 3 numerical failure; "
+    "4 outside the range of the data (with --strict); 5 a balance does not close; 130 interrupted."
+)
 
 
 def version():
@@ -20,7 +22,9 @@ def version():
     return installed("photochlorination-reactor")
 
 
-@click.group(epilog=EPILOG, context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100})
+@click.group(
+    epilog=EPILOG, context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100}
+)
 @click.version_option(package_name="photochlorination-reactor", prog_name="reactor")
 def cli():
     """Design continuous photochlorination reactors: light, kinetics, heat, distance from the explosive range.
@@ -29,26 +33,38 @@ def cli():
     """
 
 
-OVERRIDE = click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True,
-                        help='Override one entry of the case, like --set vessel.length="2 m"; may be repeated.')
-STRICT = click.option("--strict", is_flag=True, help="Refuse every default that the case file does not state.")
+OVERRIDE = click.option(
+    "--set",
+    "overrides",
+    metavar="KEY=VALUE",
+    multiple=True,
+    help='Override one entry of the case, like --set vessel.length="2 m"; may be repeated.',
+)
+STRICT = click.option(
+    "--strict", is_flag=True, help="Refuse every default that the case file does not state."
+)
 
 
 @cli.command()
 @click.argument("name")
-@click.option("--from", "kind", default="methane", show_default=True,
-              help="Which start: methane, ethane, propane or tank.")
+@click.option(
+    "--from",
+    "kind",
+    default="methane",
+    show_default=True,
+    help="Which start: methane, ethane, propane or tank.",
+)
 @click.option("--force", is_flag=True, help="Overwrite a file that exists.")
 def new(name, kind, force):
-    """Write a commented case file NAME that runs as delivered.
+    """Write a commented case file to start from.
 
-    NAME gets the ending .toml where it has none; - prints to standard output.
+    It runs as delivered. NAME gets the ending .toml where it has none; - prints to standard output.
     """
     from reactor.case import template
 
     text = template(kind)
     if name == "-":
-        click.echo(text, nl=False)
+        _print(text)
         return
     path = Path(name if name.endswith(".toml") else f"{name}.toml")
     if path.exists() and not force:
@@ -62,24 +78,40 @@ def new(name, kind, force):
 @OVERRIDE
 @STRICT
 def check(case, overrides, strict):
-    """List what a CASE file says: typed, assumed, taken from the data, wrong."""
+    """List what is typed, assumed, wrong.
+
+    CASE is a case file; what is taken from the data is listed too.
+    """
     from reactor.case import load
     from reactor.report.listing import listing
 
-    click.echo(listing(load(case, overrides, strict)), nl=False)
+    _print(listing(load(case, overrides, strict)))
 
 
 @cli.command()
 @click.argument("case")
 @OVERRIDE
 @STRICT
-@click.option("--json", "as_json", is_flag=True, help="Print the result as one JSON object (names as in the README).")
+@click.option(
+    "--json", "as_json", is_flag=True, help="Print the result as one JSON object (names as in the README)."
+)
 @click.option("--save", metavar="FILE", help="Save the result as JSON for later printing and comparison.")
-@click.option("--profile", metavar="FILE", help="Write the profile along the tube as CSV, units in the header.")
-@click.option("--fail-on", type=click.Choice(["fail", "caution"]), default="fail", show_default=True,
-              help="Exit 1 from this verdict on.")
+@click.option(
+    "--profile", metavar="FILE", help="Write the profile along the tube as CSV, units in the header."
+)
+@click.option(
+    "--fail-on",
+    type=click.Choice(["fail", "caution"]),
+    default="fail",
+    show_default=True,
+    help="Exit 1 from this verdict on.",
+)
 def rate(case, overrides, strict, as_json, save, profile, fail_on):
-    """Rate the reactor of a CASE file: conversion, products, light, heat, hazards."""
+    """Rate the reactor of a case file.
+
+    Prints conversion, products, light, heat, hazards and verdicts of CASE. With --save - or --profile - the
+    file goes to standard output and the report to standard error.
+    """
     from reactor.case import load
     from reactor.rating import rate as run
     from reactor.report.terminal import render
@@ -91,23 +123,24 @@ def rate(case, overrides, strict, as_json, save, profile, fail_on):
         from reactor.report.export import profile_csv
 
         _write(Path(profile), profile_csv(result))
-    click.echo(result.to_json() if as_json else render(result, _emphasis()), nl=as_json)
+    _print(
+        result.to_json() + "\n" if as_json else render(result, _emphasis()), to_stderr="-" in (save, profile)
+    )
     sys.exit(exit_code(result, strict, fail_on))
 
 
 @cli.command()
 @click.argument("case", required=False)
 def sources(case):
-    """Print the provenance of every number: all data, or what a CASE relies on."""
+    """Print where the numbers come from.
+
+    Every number with its source and status, the weak ones by name; with CASE what that case relies on.
+    """
+    from reactor.case import load
+    from reactor.rating import cited, shipped
     from reactor.report.provenance import all_sources, relied_on
 
-    if case is None:
-        click.echo(all_sources(), nl=False)
-        return
-    from reactor.case import load
-    from reactor.rating import cited
-
-    click.echo(relied_on(cited(load(case))), nl=False)
+    _print(all_sources(*shipped()) if case is None else relied_on(*cited(load(case))))
 
 
 def exit_code(result, strict, fail_on):
@@ -133,7 +166,7 @@ def _emphasis():
 def _write(path, text):
     """Write a file; - is standard output."""
     if str(path) == "-":
-        click.echo(text, nl=False)
+        _print(text)
         return
     try:
         path.write_text(text, encoding="utf-8", newline="")
@@ -141,29 +174,40 @@ def _write(path, text):
         raise CaseError(f"{path}: cannot be written ({error.strerror}); choose another place") from None
 
 
+def _print(text, to_stderr=False):
+    """Print, and go on quietly when the reader of the pipe has left: the exit code still stands."""
+    import os
+
+    stream = sys.stderr if to_stderr else sys.stdout
+    try:
+        click.echo(text, nl=False, err=to_stderr)
+        stream.flush()
+    except BrokenPipeError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), stream.fileno())
+
+
 def main():
     """Run the command line; print errors without a traceback."""
-    for stream in (sys.stdout, sys.stderr):
-        stream.reconfigure(errors="replace")
+    for stream in (sys.stdout, sys.stderr):  # a title that the terminal cannot show becomes ?
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="replace")
     try:
         cli(standalone_mode=False, prog_name="reactor")
     except ReactorError as error:
         for fault in getattr(error, "faults", [str(error)]):
             click.echo(f"reactor: {fault}", err=True)
         sys.exit(next(code for kind, code in CODES if isinstance(error, kind)))
-    except click.exceptions.Abort:
+    except (click.exceptions.Abort, KeyboardInterrupt):
         click.echo("reactor: interrupted", err=True)
         sys.exit(INTERRUPTED)
     except click.ClickException as error:
-        error.show()
+        text = error.format_message()
+        click.echo(text if text.startswith("Usage:") else f"reactor: {text} Help: reactor --help", err=True)
         sys.exit(INPUT)
-    except BrokenPipeError:
-        _close_pipe()
-
-
-def _close_pipe():
-    """Leave quietly when the reader of a pipe has gone."""
-    import os
-
-    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-    sys.exit(OK)
+    except Exception as error:
+        click.echo(
+            f"reactor: a fault of the program, not of the case: {type(error).__name__}: {error}; report "
+            "it with the case file",
+            err=True,
+        )
+        sys.exit(NUMERICAL)

@@ -108,7 +108,9 @@ class Vessel:
         kinds.LENGTH.within(1e-5, 0.5, "3 mm"), None, "the resistance of the wall itself is left out"
     )
     shell_material: str = assume(
-        Listed("a wall material", "heat/walls.csv", "material"), "not stated", "its temperature limit is not assessed"
+        Listed("a wall material", "heat/walls.csv", "material"),
+        "not stated",
+        "its temperature limit is not assessed",
     )
     stirring: float | None = leave(kinds.FREQUENCY)
     impeller: float | None = assume(

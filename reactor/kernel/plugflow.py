@@ -6,6 +6,7 @@ them running totals (`TOTALS`) that close the accounts of photons, heat and time
 """
 
 import time
+import warnings
 from typing import NamedTuple
 
 import numpy as np
@@ -229,7 +230,9 @@ class _March:
         solver = LSODA(balance.slope, section.start, y, section.stop, rtol=self.budget.rtol, atol=tolerance,
                        jac=balance.jacobian)
         while solver.status == "running":
-            message = solver.step()
+            with warnings.catch_warnings():  # a step that fails says so in its status
+                warnings.simplefilter("ignore")
+                message = solver.step()
             self._check(solver, K, message)
             self._keep(solver.t, solver.y, mass_flow)
             if solver.y[K] > self.hottest[0] - 2.0:
@@ -255,8 +258,12 @@ class _March:
 
     def _check(self, solver, K, message):
         self.steps += 1
-        where = f"at z = {solver.t:.6g} m, T = {solver.y[K]:.1f} K"
+        (T, P), first = self.y[-1][[K, K + 2]], self.y[0][K + 2]  # of the last good station
+        where = f"at z = {self.z[-1]:.6g} m, T = {T:.1f} K"
         if solver.status == "failed" or not np.all(np.isfinite(solver.y)):
+            if P / first < 0.5:
+                raise ConvergenceError(f"friction uses up the pressure {where}, P = {P / 1e5:.3g} bar; "
+                                       "take a wider tube or more of them in parallel")
             raise ConvergenceError(f"the tube could not be followed further {where}: {message or 'not finite'}; "
                                    "try a looser solver.rtol or less light")
         if self.steps > self.budget.steps:

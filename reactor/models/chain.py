@@ -34,7 +34,7 @@ def light_order(profile, gas, wall_loss):
         chlorine = c[gas.index["Cl2"]]
         if J > 0 and chlorine > 0:
             plenty = np.sqrt(J * chlorine / RECOMBINATION)
-            if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: a chain without an end has no answer
+            if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: no end to the chain
                 c[radical] = plenty
             order[i] = _order(rates, c.copy(), T, J, wall_loss, acid, radical)
     return order
