@@ -81,3 +81,13 @@ def absorb(beam, c, T):
         power_by_T=(by_T * c * beam.area) @ beam.energy,
         outer_wall=beam.entering @ beam.transmitted(log_tau)[0],
     )
+
+
+def photolysis_rates(beam, c, T):
+    """Return J [1/s] at many places: chlorine `c` [mol/m^3] and temperature `T` [K], both (M,)."""
+    if beam.fixed is not None:
+        return np.full(len(c), beam.fixed)
+    x = np.clip((T - beam.middle) / beam.half, -1.0, 1.0)
+    kappa = AVOGADRO * (x[:, None] ** np.arange(beam.sigma.shape[1]) @ beam.sigma.T)
+    log_tau = np.log(np.maximum(kappa * c[:, None] * beam.path, THINNEST))
+    return (kappa * beam.absorbed(log_tau)[0]) @ beam.entering * (beam.path / beam.area)

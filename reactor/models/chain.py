@@ -78,15 +78,12 @@ def dark_chain(stream, gas):
     share = partner @ stream.fractions
     present = partner.T @ (share > 0) > 0
     fuel = float(stream.fractions[present].sum())
-    recombination = int(np.flatnonzero(rates.reversible == gas.start[0])[0])
-    none = np.zeros(len(t.A))
+    recombination = int(gas.start[0])
 
     def propagation(T):
-        k, _ = rates.constants(T, none, 0.0, 0.0)
-        return float(k[taking] @ share) / fuel
+        return float(rates.constants(T)[0][taking] @ share) / fuel
 
     def equilibrium(T):
-        _, _, h, g = rates.thermo.at(T)
-        return 1.0 / float(rates.equilibrium(T, h, g)[0][recombination])
+        return 1.0 / float(rates.constants(T)[1][recombination])
 
     return propagation, equilibrium, fuel

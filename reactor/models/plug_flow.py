@@ -3,8 +3,10 @@
 import numpy as np
 
 from reactor.errors import ConvergenceError
+from reactor.kernel.light import photolysis_rates
 from reactor.kernel.plugflow import TOTALS, Budget, Tube, integrate
 from reactor.kernel.rates import Rates
+from reactor.kernel.thermo import R
 from reactor.models import assemble
 from reactor.models.profile import Profile
 from reactor.stream import Stream
@@ -122,14 +124,12 @@ def _profile(case, gas, tube, inlet, path, remarks):
 
 def _photolysis(tube, path, K):
     """Return J [1/s] at the stations."""
-    from reactor.kernel.light import absorb
-    from reactor.kernel.thermo import R
-
     starts = np.array([section.start for section in tube.sections])
     number = np.clip(np.searchsorted(starts, path.z, side="right") - 1, 0, None)
-    found = []
-    for place, y in zip(number, path.state, strict=True):
-        n, T, P = y[:K], y[K], y[K + 2]
-        c = n[tube.chlorine] * P / (R * T * n.sum())
-        found.append(absorb(tube.sections[place].beam, c, T).J)
-    return np.array(found)
+    n, T, P = path.state[:, :K], path.state[:, K], path.state[:, K + 2]
+    c = n[:, tube.chlorine] * P / (R * T * n.sum(axis=1))
+    J = np.zeros(len(path.z))
+    for place, section in enumerate(tube.sections):
+        here = number == place
+        J[here] = photolysis_rates(section.beam, c[here], T[here])
+    return J

@@ -35,7 +35,7 @@ def per_line(light, profile):
     chlorine = profile.species.index("Cl2")
     c, T = profile.concentrations[:, chlorine], profile.temperature
     t = np.clip((T - 550.0) / 350.0, -1.0, 1.0)
-    sigma = np.array([np.polynomial.polynomial.polyval(t, row) for row in light.sigma]).T
+    sigma = t[:, None] ** np.arange(light.sigma.shape[1]) @ light.sigma.T
     tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
     share = light.absorbed(np.log(tau))[0] * tau
     if len(profile.z) == 1:
