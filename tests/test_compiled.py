@@ -118,7 +118,7 @@ def test_the_matrix_of_a_tube_is_that_by_differences_of_fourth_order():
         for y in path.state[[len(path.z) // 3, len(path.z) // 2]]:
             found, scale = balance.jacobian(y), np.maximum(np.abs(y) * 1e-4, 1e-6)
             scale[K:] = 1e-4 * y[K:]
-            columns = [fourth_order(lambda y: balance.slope(y)[:K + 3], y, scale * np.eye(K + 3)[k])
+            columns = [fourth_order(lambda y, balance=balance: balance.slope(y)[:K + 3], y, scale * np.eye(K + 3)[k])
                        for k in range(K + 3)]
             expected = np.array([slope for slope, _ in columns]).T / scale
             rounding = np.array([np.full(K + 3, r) for _, r in columns]).T / scale

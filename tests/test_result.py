@@ -1,6 +1,7 @@
 """The result as a record: plain values, JSON, data frame, and what is refused on reading back."""
 
 import json
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -139,3 +140,10 @@ def test_a_dark_case_gives_nulls_and_says_why():
     ):
         assert result[name] is None
     assert result.ledger == ()
+
+
+def test_the_readme_lists_every_name_with_its_unit_and_meaning():
+    readme = (Path(__file__).parent.parent / "README.md").read_text(encoding="utf-8")
+    for names in (results.NAMES, results.MIXTURE, results.STATE):
+        for name, (unit, meaning) in names.items():
+            assert f"| `{name}` | {unit} | {meaning} |" in readme

@@ -82,7 +82,7 @@ def eliminate(pattern, size):
     rows = [{i} for i in range(size)]
     for i, k in pattern:
         rows[i].add(k)
-    above = []
+    above: list = []
     for i in range(size):
         for k in range(i):
             if k in rows[i]:

@@ -39,7 +39,8 @@ class RatesAt(ctypes.Structure):
     """`Rates` of native/batch.h."""
 
     _fields_ = ([(name, _address) for name in ("A", "low_A", "c")] + [(name, ctypes.c_double) for name in ("T", "J", "loss")]
-                + [(name, _address) for name in ("cp", "cp_slope", "h", "g", "forward", "reverse", "production", "by_c", "by_T", "by_J")])
+                + [(name, _address) for name in ("cp", "cp_slope", "h", "g", "forward", "reverse", "production", "by_c",
+                                                 "by_T", "by_J")])
 
 
 class Point(ctypes.Structure):

@@ -52,8 +52,9 @@ class Packed:
             (curve.start, curve.step, len(curve.value)),
             np.column_stack((curve.value, np.asarray(curve.slope) * curve.step)).ravel())))
 
-    def section(self, start, stop, beam, sleeve_heat, injected, heat, molar_mass):
+    def section(self, stretch, molar_mass):
         """Add one stretch of constant light."""
+        start, stop, beam, sleeve_heat, injected, heat = stretch
         entering = np.asarray(beam.entering, float)
         lines, degree = len(entering) if entering.any() else 0, beam.sigma.shape[1] - 1
         fixed = beam.fixed is not None
@@ -74,7 +75,7 @@ class Packed:
         """Add a tube with the state at its inlet."""
         first = len(self.sections)
         for section in tube.sections:
-            self.section(*section, tube.molar_mass)
+            self.section(section, tube.molar_mass)
         drag = tube.friction / (2 * tube.diameter * tube.area**2)
         self.cases.append((tube.wall_loss, tube.area, drag, 1.0 / tube.coolant, mass_flow, T, Tc, P, budget.rtol,
                            budget.seconds, 0.0, 0.0, 0.0, 0.0))
@@ -85,7 +86,7 @@ class Packed:
     def tank_case(self, tank, n, T, duration, budget):
         """Add a stirred tank with its state at the start."""
         first = len(self.sections)
-        self.section(0.0, duration, tank.beam, tank.sleeve_heat, None, 0.0, tank.molar_mass)
+        self.section((0.0, duration, tank.beam, tank.sleeve_heat, None, 0.0), tank.molar_mass)
         flow, finite = float(tank.feed @ tank.molar_mass), bool(np.isfinite(tank.coolant))
         self.cases.append((tank.wall_loss, tank.volume, 0.0, 1.0 / tank.coolant, flow, T, tank.coolant_inlet,
                            tank.pressure, budget.rtol, budget.seconds, tank.length, tank.feed_heat,

@@ -176,7 +176,7 @@ def stream(jobs, between=None, threads=None):
     stations, wide, jobs = 0 if between is None else between + 1, native.lanes(), iter(jobs)
     threads = threads or len(os.sched_getaffinity(0)) if hasattr(os, "sched_getaffinity") else threads or os.cpu_count()
     with ThreadPoolExecutor(threads) as pool:
-        waiting = deque()
+        waiting: deque = deque()
         while True:
             while len(waiting) <= threads and (chunk := list(islice(jobs, CHUNK))):
                 waiting.append(pool.submit(_solve, chunk, stations, wide))
@@ -187,7 +187,7 @@ def stream(jobs, between=None, threads=None):
 
 def _solve(jobs, stations, wide):
     """Return the paths of jobs, or reasons; those on one mechanism go to the kernel together."""
-    groups = {}
+    groups: dict[int, tuple] = {}
     for number, job in enumerate(jobs):
         plan = job.tube.rates.plan(job.tube.chlorine, job.tube.starts)
         groups.setdefault(id(plan), (plan, []))[1].append(number)

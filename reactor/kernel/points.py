@@ -52,7 +52,7 @@ class Points:
         temperatures : array (M,)
             Temperatures held. [K]
         y : array (K + 3,)
-            State that the first one is sought from.
+            State that the first one is sought from: n [mol/kg], T, Tc [K], P [Pa].
         near : bool
             Whether `y` is known to be at rest close by.
         """

@@ -29,7 +29,7 @@ def write(parts, order, eliminate):
             np.concatenate(([0], np.cumsum([len(s) for s in specials]))), [s for one in specials for s, _ in one],
             parts.colliders, parts.falloffs, *_starts(parts)]
     ints += [part for one in sums for part in one[0]]
-    others = [(list(item.others) + [K, K])[:2] for item in parts.items]
+    others = [([*list(item.others), K, K])[:2] for item in parts.items]
     ints += [[item.k for item in parts.items], [new[a] for a, _ in others], [new[b] for _, b in others]]
     ints += [[plan.place(i, k) for i, k in entries], *_border(plan, K)]
     ints += [plan.diagonal, plan.row, plan.column, plan.lower_at, plan.lower_row, plan.update_first, plan.update_to]
@@ -72,7 +72,8 @@ def _jacobian(parts, new):
 
 def _sum(terms):
     """Return the lists of a sum: added, subtracted, added with a factor; equal targets far apart."""
-    seen, spread = {}, []
+    seen: dict[int, int] = {}
+    spread = []
     for to, source, by in terms:
         seen[to] = seen.get(to, 0) + 1
         spread.append((seen[to], int(to), int(source), float(by)))
@@ -85,7 +86,7 @@ def _sum(terms):
 
 def _slots(taken, new, K):
     """Return three lists of species numbers, K where there is none."""
-    return [[new[(one + [K, K, K])[slot]] for one in taken] for slot in range(3)]
+    return [[new[([*one, K, K, K])[slot]] for one in taken] for slot in range(3)]
 
 
 def _starts(parts):

@@ -1,5 +1,7 @@
 """Plug flow in one tube or several in parallel, cooled at constant temperature, with or against the gas."""
 
+import itertools
+
 import numpy as np
 
 from reactor.errors import ConvergenceError
@@ -91,7 +93,7 @@ def _bracketed(run, entering, hot):
 
     grid = np.linspace(entering, max(hot, entering) + REACH, 4 * SCAN)
     last = miss(grid[0])
-    for low, high in zip(grid, grid[1:], strict=False):
+    for low, high in itertools.pairwise(grid):
         new = miss(high)
         if last * new <= 0:
             return brentq(miss, low, high, xtol=1e-7, rtol=1e-12)

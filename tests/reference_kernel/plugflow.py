@@ -49,7 +49,7 @@ class Balance:
     def slope(self, z, y):
         """Return dy/dz."""
         tube, section = self.tube, self.section
-        n, T, Tc, P, density, c = self.gas(y)
+        n, T, Tc, _P, density, c = self.gas(y)
         light = absorb(section.beam, c[tube.chlorine], T)
         q_f, q_r = tube.rates.both(c, T, light.J, tube.wall_loss)
         production = (q_f - q_r) @ tube.rates.net
@@ -220,7 +220,7 @@ class _March:
         (T, P), first = self.y[-1][[K, K + 2]], self.y[0][K + 2]  # of the last good station
         where = f"at z = {self.z[-1]:.6g} m, T = {T:.1f} K"
         if solver.status == "failed" or not np.all(np.isfinite(solver.y)):
-            if P < 0.5 * first:
+            if 0.5 * first > P:
                 raise ConvergenceError(f"friction uses up the pressure {where}, P = {P / 1e5:.3g} bar; take a wider "
                                        "tube or more of them in parallel")
             raise ConvergenceError(f"the tube could not be followed further {where}: {message or 'not finite'}; "

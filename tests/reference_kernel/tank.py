@@ -6,6 +6,7 @@ species balances have one solution (the chain ends in second order, nothing bran
 followed upward in T, and every T where the heat balance closes is a steady state.
 """
 
+import itertools
 import time
 import warnings
 from typing import NamedTuple
@@ -169,7 +170,7 @@ def steady_states(tank, low, high, budget=Budget(), points=90):
 
 def _pairs(grid, values):
     both = list(zip(grid, values, strict=True))
-    return zip(both, both[1:], strict=False)
+    return itertools.pairwise(both)
 
 
 def _near_misses(curve, grid, values):
