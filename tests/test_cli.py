@@ -363,7 +363,7 @@ def test_exit_codes_of_an_error(error, code, run, solved):
 
 
 def test_a_time_budget_that_is_too_small_stops_the_solver(run):
-    code, out, err = run("rate", CASE, "--set", "solver.seconds=0.01")
+    code, out, err = run("rate", CASE, "--set", "solver.seconds=1e-6")
     assert (code, out) == (3, "")
     assert "raise solver.seconds" in err
 

@@ -225,7 +225,7 @@ class Solver:
     """[solver]: tolerance and time budget."""
 
     rtol: float = leave(kinds.NUMBER.within(1e-13, 1e-2, like="1e-7"), 1e-7)
-    seconds: float = leave(kinds.NUMBER.within(0.01, 1e6, like="60"), 60.0)
+    seconds: float = leave(kinds.NUMBER.within(1e-6, 1e6, like="60"), 60.0)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -38,7 +38,7 @@ class Commands(click.Group):
         """Return the command that the words name; a misspelt one is answered with the nearest."""
         near = difflib.get_close_matches(args[0], MODULES, n=1, cutoff=0.5)
         if args[0] not in MODULES and near and not args[0].startswith("-"):
-            raise click.UsageError(f"No such command {args[0]!r}; did you mean {near[0]!r}?", ctx)
+            raise click.UsageError(f"No such command {args[0]!r}. Did you mean {near[0]!r}?", ctx)
         return super().resolve_command(ctx, args)
 
 
