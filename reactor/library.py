@@ -125,7 +125,7 @@ def sheet(name):
 @cache
 def sources():
     """Return every source the data cite, {key: {title, author, where, seen}}."""
-    found = {}
+    found: dict[str, dict] = {}
     for path in sorted((folder() / "sources").glob("*.toml")):
         with open(path, "rb") as file:
             found |= tomllib.load(file)

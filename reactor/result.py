@@ -1,9 +1,9 @@
-"""What a run found, as plain records that survive a file: numbers with units, verdicts, sources, a profile."""
+"""What a run found, as plain records that survive a file: numbers with units, verdicts, profile."""
 
 import json
 from dataclasses import asdict, dataclass, field, fields
 from math import isfinite
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 from reactor.errors import CaseError
 
@@ -20,7 +20,13 @@ class Verdict(NamedTuple):
     why: str
 
 
-WORDS = ("PASS", "NOT ASSESSED", "CAUTION", "OUT OF DATA RANGE", "FAIL")
+WORDS = PASS, NOT_ASSESSED, CAUTION, OUT, FAIL = (
+    "PASS",
+    "NOT ASSESSED",
+    "CAUTION",
+    "OUT OF DATA RANGE",
+    "FAIL",
+)
 
 NAMES = {  # every entry of `results`: its unit (or what it is), and its definition
     "conversion_chlorine": ("1", "of all chlorine fed, injected portions included"),
@@ -40,8 +46,11 @@ NAMES = {  # every entry of `results`: its unit (or what it is), and its definit
     "temperature_outlet": ("K", "gas at the outlet"),
     "temperature_hottest": ("K", "hottest gas, mean of the cross-section"),
     "temperature_hottest_position": ("m", "where the gas is hottest"),
-    "adiabatic_rise": ("K", "all chlorine used at the computed product split, from the mixed feed; no light, no cooling"),
-    "heat_reaction": ("W", "minus the integral of the sum of h omega at local temperature; photon power is apart"),
+    "adiabatic_rise": (
+        "K",
+        "mixed feed, all chlorine used at the computed product split, no light or cooling",
+    ),
+    "heat_reaction": ("W", "minus the integral of h omega at local temperature; photon power is apart"),
     "heat_removed": ("W", "from the gas to the walls"),
     "heat_lamp_to_gas": ("W", "from the sleeve to the gas, absorbed light apart"),
     "heat_to_coolant": ("W", "through the shell to the coolant"),
@@ -49,7 +58,7 @@ NAMES = {  # every entry of `results`: its unit (or what it is), and its definit
     "transfer_units": ("1", "U times shell area over the heat capacity flow at the inlet"),
     "reynolds_number": ("1", "of the gas at the inlet of one vessel; of the stirrer in a tank"),
     "sleeve_skin_temperature": ("K", "gas side of the sleeve where the lit gas is hottest"),
-    "mtsr": ("K", "temperature that the synthesis reaction can reach: leftover chlorine reacts where it is hottest"),
+    "mtsr": ("K", "what the synthesis can reach: the leftover chlorine reacts where that is hottest"),
     "light_off_temperature": ("K", "unreacted feed of this temperature runs away in the dark within 10 s"),
     "exotherm_margin": ("K", "limits.hottest less the hottest gas"),
     "dew_point_margin": ("K", "coldest surface less the dew point of the gas there, the smallest one"),
@@ -60,7 +69,7 @@ NAMES = {  # every entry of `results`: its unit (or what it is), and its definit
     "photons_absorbed": ("mol/s", "photons that chlorine absorbs, from the mean rate of photolysis"),
     "chain_length": ("1", "HCl formed per Cl atom started, by light and by heat, gross"),
     "quantum_yield": ("1", "HCl formed per photon absorbed; none where thermal starts exceed one tenth"),
-    "light_order": ("1", "d ln(HCl rate)/d ln J, molecules fixed and radicals stationary, mean over the HCl formed in light"),
+    "light_order": ("1", "d ln(HCl rate)/d ln J with molecules fixed, mean over the HCl formed in light"),
     "thermal_start_share": ("1", "Cl atoms started by heat over all Cl atoms started, gross"),
     "class_inlet": ("word", "class of the mixed inlet: OUTSIDE (estimate), MARGIN, UNKNOWN or INSIDE"),
     "class_worst": ("word", "worst class of feeds, inlet, injectors and stations; UNKNOWN counts as INSIDE"),
@@ -200,10 +209,14 @@ def from_json(text, where="the saved result"):
     """
     try:
         record = json.loads(text)
-        if record.pop("format", FORMAT) != FORMAT:
+        if record.pop("format") != FORMAT:
             raise CaseError(f"{where}: was saved by another version of the program; rate the case again")
         record["verdicts"] = [Verdict(**verdict) for verdict in record["verdicts"]]
         listed = {item.name for item in fields(Result) if item.type is tuple}
-        return Result(**{key: tuple(value) if key in listed else value for key, value in record.items()})
+        found: dict[str, Any] = {k: tuple(v) if k in listed else v for k, v in record.items()}
+        return Result(**found)
     except (ValueError, KeyError, TypeError, AttributeError) as error:
-        raise CaseError(f"{where}: is not a saved result ({error}); save one with: reactor rate CASE --save FILE") from None
+        what = f"no {error} in it" if isinstance(error, KeyError) else error
+        raise CaseError(
+            f"{where}: is not a saved result ({what}); save one with: reactor rate CASE --save FILE"
+        ) from None

@@ -5,6 +5,9 @@ from pathlib import Path
 
 import pytest
 
+from reactor.case import load
+from reactor.rating import rate
+
 CASES = Path(__file__).parent.parent / "cases"
 
 
@@ -24,9 +27,7 @@ def pytest_collection_modifyitems(config, items):
 
 @cache
 def _rated(name):
-    import reactor
-
-    return reactor.rate(reactor.load(CASES / f"{name}.toml"))
+    return rate(load(CASES / f"{name}.toml"))
 
 
 @pytest.fixture(scope="session")

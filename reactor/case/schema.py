@@ -126,7 +126,9 @@ class Vessel:
         kinds.LENGTH.within(1e-5, 0.5, "3 mm"), None, "the resistance of the wall itself is left out"
     )
     shell_material: str = assume(
-        Listed("a wall material", "heat/walls.csv", "material"), "not stated", "its temperature limit is not assessed"
+        Listed("a wall material", "heat/walls.csv", "material"),
+        "not stated",
+        "its temperature limit is not assessed",
     )
     stirring: float | None = leave(kinds.FREQUENCY)
     impeller: float | None = assume(
@@ -259,7 +261,7 @@ class Solver:
     """[solver]: tolerance and time budget."""
 
     rtol: float = leave(kinds.NUMBER.within(1e-13, 1e-2, like="1e-7"), 1e-7)
-    seconds: float = leave(kinds.NUMBER.within(0.01, 1e6, like="60"), 60.0)
+    seconds: float = leave(kinds.NUMBER.within(1e-6, 1e6, like="60"), 60.0)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -155,10 +155,9 @@ def _tube(values):
 def _tank():
     """Return the text of a stirred tank case."""
     values = {
-        "headline": "Methane to chloromethane in a stirred vessel with four immersed mercury lamps.",
+        "headline": "Methane to chloromethane in a stirred vessel with four immersed LED lamps.",
         "title": "Dipper: chloromethane in a stirred vessel, 20:1",
-        "lamp": "medium-pressure mercury",
-        "power": "1 kW",
+        "power": "0.5 kW",
         "number": "4",
         "slip": "10 %",
         "vessel": _TANK,

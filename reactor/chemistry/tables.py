@@ -69,9 +69,9 @@ class Tables:
     third_body: np.ndarray
     falloff: np.ndarray
     efficiencies: np.ndarray
-    low_A: np.ndarray  # noqa: N815
+    low_A: np.ndarray
     low_b: np.ndarray
-    low_E: np.ndarray  # noqa: N815
+    low_E: np.ndarray
     troe: np.ndarray
     nasa_low: np.ndarray
     nasa_high: np.ndarray

@@ -11,8 +11,8 @@ FIXED = (
     "The class speaks of flames only. A lit reactor gives off its full heat of reaction at any "
     "composition, and strong light is itself a source of ignition.",
     "Heat, rate, light and temperature depend on the kinetic and thermochemical data named with the "
-    "result. Where a band is printed it covers those data only; where none is printed the uncertainty "
-    "is not known.",
+    "result. Where a band is printed it covers what it names and nothing else; where none is printed "
+    "the uncertainty is not known.",
     "Switching the lamp off stops the reaction only while the gas is colder than its thermal "
     "light-off temperature. Above it only shutting off chlorine, sweeping and cooling do.",
     "Chlorine, hydrogen chloride and the chlorinated alkanes are toxic; with oxygen or carbon "

@@ -8,6 +8,7 @@ import numpy as np
 from reactor import library
 
 COLDEST, HOTTEST = 173.15, 473.15  # K; how far the tables are followed
+POINTS = 1501  # of the grid between them, 0.2 K apart
 
 
 class Dew(NamedTuple):
@@ -39,12 +40,12 @@ def vapour_pressure(species, T):
     ----------
     species : str
         Key of data/hazards/vapour_pressure.csv. [-]
-    T : float
+    T : float or array
         Temperature. [K]
 
     Returns
     -------
-    P : float
+    P : same shape as `T`
         Vapour pressure, over the solid for C2Cl6. [Pa]
 
     References
@@ -57,14 +58,26 @@ def vapour_pressure(species, T):
     15220
     """
     inverse, logs, _ = _curves()[species]
-    at = int(np.clip(np.searchsorted(inverse, 1 / T), 1, len(inverse) - 1))
-    if not inverse[0] <= 1 / T <= inverse[-1]:
-        slope = (logs[at] - logs[at - 1]) / (inverse[at] - inverse[at - 1])
-        return float(np.exp(logs[at] + slope * (1 / T - inverse[at])))
-    first = min(max(at - 2, 0), len(inverse) - 4)
-    x, y = inverse[first : first + 4], logs[first : first + 4]
-    weights = [np.prod([(1 / T - x[j]) / (x[i] - x[j]) for j in range(4) if j != i]) for i in range(4)]
-    return float(np.exp(weights @ y))
+    x = 1 / np.asarray(T, float)
+    at = np.clip(np.searchsorted(inverse, x), 1, len(inverse) - 1)
+    slope = (logs[at] - logs[at - 1]) / (inverse[at] - inverse[at - 1])
+    straight = logs[at] + slope * (x - inverse[at])
+    four = np.clip(at - 2, 0, len(inverse) - 4)[..., None] + np.arange(4)
+    inside = (inverse[0] <= x) & (x <= inverse[-1])
+    P = np.exp(np.where(inside, _cubic(x, inverse[four], logs[four]), straight))
+    return float(P) if P.ndim == 0 else P
+
+
+def _cubic(x, nodes, values):
+    """Return Lagrange's cubic through four (nodes, values), last axis, at `x`."""
+    found = 0.0
+    for i in range(4):
+        weight = values[..., i]
+        for j in range(4):
+            if j != i:
+                weight = weight * (x - nodes[..., j]) / (nodes[..., i] - nodes[..., j])
+        found = found + weight
+    return found
 
 
 def dew_point(fractions, P):
@@ -102,17 +115,23 @@ def dew_point(fractions, P):
     return max(found, key=lambda dew: dew.temperature) if found else None
 
 
+@cache
+def _grid():
+    """Return temperatures [K] and {species: 1/vapour pressure [1/Pa] at them}, close enough to interpolate in."""
+    T = np.linspace(COLDEST, HOTTEST, POINTS)
+    return T, {species: 1 / vapour_pressure(species, T) for species in _curves()}
+
+
 def _first(partial, phase):
     """Return the `Dew` of the species with these partial pressures in one ideal phase, else None."""
-    from scipy.optimize import brentq
-
-    def excess(T):
-        return np.log(sum(p / vapour_pressure(s, T) for s, p in partial.items()))
-
-    if excess(COLDEST) < 0:
+    T, inverse = _grid()
+    excess = np.log(sum(p * inverse[s] for s, p in partial.items()))  # falls with T
+    if excess[0] < 0:
         return None
-    T = HOTTEST if excess(HOTTEST) > 0 else float(brentq(excess, COLDEST, HOTTEST, xtol=1e-4))
-    return Dew(T, max(partial, key=lambda s: partial[s] / vapour_pressure(s, T)), phase)
+    at = min(int(np.searchsorted(-excess, 0.0)), POINTS - 1)
+    share = np.clip(excess[at - 1] / (excess[at - 1] - excess[at]), 0.0, 1.0) if at else 0.0
+    dew = float(T[at - 1] + share * (T[at] - T[at - 1])) if at else float(T[0])
+    return Dew(dew, max(partial, key=lambda s: partial[s] * inverse[s][at]), phase)
 
 
 def cited():

@@ -15,8 +15,8 @@ class Beam(NamedTuple):
     (lines, degree + 1) is the cross-section [m^2] as a polynomial in (T - middle)/half, `path` [m] the gas gap,
     `area` [m^2] the gas cross-section, `absorbed` and `transmitted` curves against ln(optical thickness):
     absorbed share over thickness, and share that is not absorbed. A fixed rate [1/s] replaces it all. `even`, a curve
-    against ln(mean thickness), is the rate that counts for the radicals over the mean rate (None: one mixed pool). `along`,
-    a curve of position [m], multiplies `entering` (None: constant light).
+    against ln(mean thickness), is the rate that counts for the radicals over the mean rate (None: one mixed pool).
+    `along`, a curve of position [m], multiplies `entering` (None: constant light).
     """
 
     entering: np.ndarray
@@ -99,3 +99,18 @@ def _evened(beam, c, sigma, sigma_T, mean):
     ratio, slope = beam.even(float(np.log(max(c * depth, THINNEST))))
     depth_T = 2 * (beam.entering @ (sigma * sigma_T)) / second - (beam.entering @ sigma_T) / first
     return J * ratio, by_c * ratio + J * slope / max(c, THINNEST), by_T * ratio + J * slope * depth_T
+
+
+def photolysis_rates(beam, c, T, z):
+    """Return J [1/s] for the radicals at many places: chlorine `c` [mol/m^3], `T` [K], position `z` [m], all (M,)."""
+    if beam.fixed is not None:
+        return np.full(len(c), beam.fixed)
+    x = np.clip((T - beam.middle) / beam.half, -1.0, 1.0)
+    sigma = x[:, None] ** np.arange(beam.sigma.shape[1]) @ beam.sigma.T
+    kappa = AVOGADRO * sigma
+    log_tau = np.log(np.maximum(kappa * c[:, None] * beam.path, THINNEST))
+    J = (kappa * beam.absorbed(log_tau)[0]) @ beam.entering * (beam.path / beam.area)
+    if beam.even is not None and beam.entering.any():
+        depth = AVOGADRO * beam.path * (sigma**2 @ beam.entering) / (sigma @ beam.entering)
+        J = J * beam.even(np.log(np.maximum(c * depth, THINNEST)))[0]
+    return J if beam.along is None else J * np.maximum(beam.along(z)[0], 0.0)

@@ -1,5 +1,6 @@
 """Turn a case and its rooms (gas, light, wall) into the plain records of the kernel."""
 
+import itertools
 from typing import NamedTuple
 
 import numpy as np
@@ -105,7 +106,7 @@ def sections(case, gas, light, even=None):
     lit = beams(light, case.chemistry.photolysis_rate, even)
     none = np.zeros(len(gas.species))
     found = []
-    for start, stop in zip(edges, edges[1:], strict=False):
+    for start, stop in itertools.pairwise(edges):
         number = min(int(np.searchsorted(light.edges, start, side="right")) - 1, len(lit) - 1)
         added = stops.get(start)
         moles, heat = (none, 0.0) if added is None else (added.moles / tubes, added.enthalpy(gas) / tubes)

@@ -34,7 +34,7 @@ def light_order(profile, gas, wall_loss):
         chlorine = c[gas.index["Cl2"]]
         if J > 0 and chlorine > 0:
             plenty = np.sqrt(J * chlorine / RECOMBINATION)
-            if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: a chain without an end has no answer
+            if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: no end to the chain
                 c[radical] = plenty
             order[i] = _order(rates, c.copy(), T, J, wall_loss, acid, radical)
     return order
@@ -78,15 +78,12 @@ def dark_chain(stream, gas):
     share = partner @ stream.fractions
     present = partner.T @ (share > 0) > 0
     fuel = float(stream.fractions[present].sum())
-    recombination = int(np.flatnonzero(rates.reversible == gas.start[0])[0])
-    none = np.zeros(len(t.A))
+    recombination = int(gas.start[0])
 
     def propagation(T):
-        k, _ = rates.constants(T, none, 0.0, 0.0)
-        return float(k[taking] @ share) / fuel
+        return float(rates.constants(T)[0][taking] @ share) / fuel
 
     def equilibrium(T):
-        _, _, h, g = rates.thermo.at(T)
-        return 1.0 / float(rates.equilibrium(T, h, g)[0][recombination])
+        return 1.0 / float(rates.constants(T)[1][recombination])
 
     return propagation, equilibrium, fuel

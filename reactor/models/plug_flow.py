@@ -1,10 +1,14 @@
 """Plug flow in one tube or several in parallel, cooled at constant temperature, with or against the gas."""
 
+import itertools
+
 import numpy as np
 
 from reactor.errors import ConvergenceError
+from reactor.kernel.light import photolysis_rates
 from reactor.kernel.plugflow import TOTALS, Budget, Tube, integrate
 from reactor.kernel.rates import Rates
+from reactor.kernel.thermo import R
 from reactor.models import assemble
 from reactor.models.profile import Profile
 from reactor.stream import Stream
@@ -89,7 +93,7 @@ def _bracketed(run, entering, hot):
 
     grid = np.linspace(entering, max(hot, entering) + REACH, 4 * SCAN)
     last = miss(grid[0])
-    for low, high in zip(grid, grid[1:], strict=False):
+    for low, high in itertools.pairwise(grid):
         new = miss(high)
         if last * new <= 0:
             return brentq(miss, low, high, xtol=1e-7, rtol=1e-12)
@@ -122,14 +126,12 @@ def _profile(case, gas, tube, inlet, path, remarks):
 
 def _photolysis(tube, path, K):
     """Return J [1/s] at the stations."""
-    from reactor.kernel.light import absorb
-    from reactor.kernel.thermo import R
-
     starts = np.array([section.start for section in tube.sections])
     number = np.clip(np.searchsorted(starts, path.z, side="right") - 1, 0, None)
-    found = []
-    for place, z, y in zip(number, path.z, path.state, strict=True):
-        n, T, P = y[:K], y[K], y[K + 2]
-        c = n[tube.chlorine] * P / (R * T * n.sum())
-        found.append(absorb(tube.sections[place].beam, c, T, z).J)
-    return np.array(found)
+    n, T, P = path.state[:, :K], path.state[:, K], path.state[:, K + 2]
+    c = n[:, tube.chlorine] * P / (R * T * n.sum(axis=1))
+    J = np.zeros(len(path.z))
+    for place, section in enumerate(tube.sections):
+        here = number == place
+        J[here] = photolysis_rates(section.beam, c[here], T[here], path.z[here])
+    return J

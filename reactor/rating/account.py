@@ -3,17 +3,26 @@
 import numpy as np
 
 from reactor import photons
+from reactor.result import by_species, quantity
 
 AVOGADRO = 6.02214076e23  # 1/mol, exact
 KEPT = 400  # stations kept in a saved profile
 
 
 def light_ledger(light, profile, case):
-    """Return the light account of all tubes as rows {name, part_of, power, photons} [W], [mol/s]."""
+    """Return the light account of all tubes as rows {name, part_of, power, photons}."""
     if not len(light.wavelength):
         return ()
     found = photons.ledger(light, *per_line(light, profile, case.vessel.parallel), parallel=case.vessel.parallel)
-    return tuple({"name": r.name, "part_of": r.part_of, "power": r.watts, "photons": r.photons} for r in found.rows)
+    return tuple(
+        {
+            "name": r.name,
+            "part_of": r.part_of,
+            "power": quantity(r.watts, "W"),
+            "photons": quantity(r.photons, "mol/s"),
+        }
+        for r in found.rows
+    )
 
 
 def per_line(light, profile, parallel):
@@ -49,30 +58,37 @@ def per_line(light, profile, parallel):
 
 
 def streams(profile, gas):
-    """Return feeds, mixed inlet and outlet as records with composition in mol/s."""
+    """Return feeds, mixed inlet and outlet as records with the flow of every species."""
     found = []
     for stream in (*profile.feeds, profile.inlet, profile.outlet):
-        composition = {s: float(n) for s, n in zip(gas.species, stream.moles, strict=True) if n > 1e-12 * stream.total}
-        found.append({
-            "name": stream.name,
-            "moles": {"value": stream.total, "unit": "mol/s"},
-            "mass": {"value": stream.mass(gas) * 3600, "unit": "kg/h"},
-            "temperature": {"value": stream.temperature, "unit": "K"},
-            "pressure": {"value": stream.pressure, "unit": "Pa"},
-            "composition": {"value": composition, "unit": "mol/s"},
-        })
+        moles = {s: n for s, n in zip(gas.species, stream.moles, strict=True) if n > 1e-12 * stream.total}
+        found.append(
+            {
+                "name": stream.name,
+                "moles": quantity(stream.total, "mol/s"),
+                "mass": quantity(stream.mass(gas) * 3600, "kg/h"),
+                "temperature": quantity(stream.temperature, "K"),
+                "pressure": quantity(stream.pressure, "Pa"),
+                "composition": by_species(moles, "mol/s"),
+            }
+        )
     return tuple(found)
 
 
 def columns(profile, gas, classes):
-    """Return the profile as {name [unit]: list}, thinned to at most `KEPT` stations (ends and hottest kept)."""
+    """Return the profile as {name [unit]: list}, thinned to about `KEPT` stations, ends and hottest kept."""
     keep = thinned(profile)
     found = {
-        "z [m]": profile.z, "temperature [K]": profile.temperature, "coolant [K]": profile.coolant,
-        "pressure [Pa]": profile.pressure, "time [s]": profile.totals["time"], "J [1/s]": profile.photolysis,
+        "z [m]": profile.z,
+        "temperature [K]": profile.temperature,
+        "coolant [K]": profile.coolant,
+        "pressure [Pa]": profile.pressure,
+        "time [s]": profile.totals["time"],
+        "J [1/s]": profile.photolysis,
         "photons_absorbed [mol/s]": profile.totals["photons"],
         "thermal_starts [mol/s]": profile.totals["thermal_starts"],
-        "heat_reaction [W]": profile.totals["heat_reaction"], "heat_removed [W]": profile.totals["to_wall"],
+        "heat_reaction [W]": profile.totals["heat_reaction"],
+        "heat_removed [W]": profile.totals["to_wall"],
     }
     found |= {f"{species} [mol/s]": profile.moles[:, i] for i, species in enumerate(gas.species)}
     return {name: [float(x) for x in np.asarray(values)[keep]] for name, values in found.items()} | {

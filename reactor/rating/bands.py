@@ -9,8 +9,14 @@ from reactor.rating import figures
 from reactor.rating.plant import scaled
 from reactor.result import quantity
 
-BANDED = ("conversion_chlorine", "chlorine_slip", "poly_share_mol", "temperature_outlet", "temperature_hottest",
-          "heat_removed")
+BANDED = (
+    "conversion_chlorine",
+    "chlorine_slip",
+    "poly_share_mol",
+    "temperature_outlet",
+    "temperature_hottest",
+    "heat_removed",
+)
 
 
 def bands(case, plant, results):
@@ -27,8 +33,9 @@ def bands(case, plant, results):
     if None in ends:
         return results
     found = dict(results)
-    found["heat_transfer_coefficient"] = quantity(U["value"], U["unit"],
-                                                  (low * U["value"], U["value"], high * U["value"]))
+    found["heat_transfer_coefficient"] = quantity(
+        U["value"], U["unit"], (low * U["value"], U["value"], high * U["value"])
+    )
     for name in BANDED:
         values = [end[name]["value"] for end in ends]
         mid = results[name]["value"]
@@ -45,5 +52,8 @@ def _solved(case, plant):
     except ConvergenceError:
         return None
     feed = mixed_feed(case, plant.gas)
-    return figures.conversion(profile, plant.gas) | figures.products(profile, plant.gas) | figures.heat(
-        profile, plant.gas, feed)
+    return (
+        figures.conversion(profile, plant.gas)
+        | figures.products(profile, plant.gas)
+        | figures.heat(profile, plant.gas, feed)
+    )

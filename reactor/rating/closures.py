@@ -1,4 +1,4 @@
-"""Do the balances close? Relative gaps of atoms, enthalpy and photons, from the outlet and the running totals."""
+"""Do the balances close? Relative gaps of atoms, enthalpy and photons."""
 
 LIMITS = {"atoms": 1e-9, "enthalpy": 1e-6, "photons": 1e-6}
 
@@ -21,7 +21,11 @@ def closures(profile, gas, entering):
     dict
         {"atoms": {element: gap}, "enthalpy": gap, "photons": gap}, all [-].
     """
-    return {"atoms": atoms(profile, gas), "enthalpy": enthalpy(profile, gas), "photons": photons(profile, entering)}
+    return {
+        "atoms": atoms(profile, gas),
+        "enthalpy": enthalpy(profile, gas),
+        "photons": photons(profile, entering),
+    }
 
 
 def atoms(profile, gas):
@@ -31,10 +35,15 @@ def atoms(profile, gas):
 
 
 def enthalpy(profile, gas):
-    """Return the gap of the heat balance, relative to the larger of heat released and heat removed."""
+    """
+    Return the gap of the heat balance, relative to the larger of heat released and heat removed.
+
+    Where neither would change the gas by a millikelvin, that is the measure.
+    """
     gained = profile.outlet.enthalpy(gas) - sum(stream.enthalpy(gas) for stream in profile.feeds)
     power, lamp, wall = (profile.total(name) for name in ("photon_power", "lamp_heat", "to_wall"))
-    scale = max(abs(profile.total("heat_reaction")) + power, abs(wall), 1e-300)
+    capacity = float(profile.fed @ gas.heat_capacity(profile.inlet.temperature))
+    scale = max(abs(profile.total("heat_reaction")) + power, abs(wall), 1e-3 * capacity)
     return float(abs(gained - power - lamp + wall) / scale)
 
 

@@ -1,5 +1,7 @@
 """The headline numbers of a rated case, each by its printed definition (see the README for the list)."""
 
+from dataclasses import replace
+
 import numpy as np
 
 from reactor.models.chain import light_order
@@ -8,13 +10,21 @@ from reactor.stream import temperature_of
 
 START_SHARE = 0.1  # above it a product count per photon means nothing, and none is given
 HOUR = 3600.0
+ORDERS = 60  # stations at which the light order is asked for
 
 
 def headline(case, plant, profile, feed):
     """Return all results that follow from the profile and the equipment."""
     gas = plant.gas
-    return (conversion(profile, gas) | products(profile, gas) | times(profile) | heat(profile, gas, feed)
-            | light(case, plant, profile) | exchange(case, plant, profile) | states(profile, gas))
+    return (
+        conversion(profile, gas)
+        | products(profile, gas)
+        | times(profile)
+        | heat(profile, gas, feed)
+        | light(case, plant, profile)
+        | exchange(case, plant, profile)
+        | states(profile, gas)
+    )
 
 
 def exchange(case, plant, profile):
@@ -40,10 +50,17 @@ def states(profile, gas):
         return {}
     chlorine, fed = gas.index["Cl2"], profile.fed
     share = fed[chlorine] / (fed @ gas.molar_mass)
-    return {"steady_states": [
-        {"temperature": quantity(s.T, "K"), "chlorine_slip": quantity(s.n[chlorine] / share, "1"), "stable": s.stable,
-         "growth_rate": quantity(s.growth_rate, "1/s")} for s in profile.states
-    ]}
+    return {
+        "steady_states": [
+            {
+                "temperature": quantity(s.T, "K"),
+                "chlorine_slip": quantity(s.n[chlorine] / share, "1"),
+                "stable": s.stable,
+                "growth_rate": quantity(s.growth_rate, "1/s"),
+            }
+            for s in profile.states
+        ]
+    }
 
 
 def conversion(profile, gas):
@@ -67,13 +84,13 @@ def _has(gas, species, element):
 
 def chlorinated(gas):
     """Return the numbers of the closed-shell species with at least one C and one Cl and no O."""
-    C, Cl, O = (gas.atoms[:, gas.elements.index(e)] for e in ("C", "Cl", "O"))
+    carbon, chlorine, oxygen = (gas.atoms[:, gas.elements.index(e)] > 0 for e in ("C", "Cl", "O"))
     closed = np.array([kind == "molecule" for kind in gas.kinds])
-    return np.flatnonzero(closed & (C > 0) & (Cl > 0) & (O == 0))
+    return np.flatnonzero(closed & carbon & chlorine & ~oxygen)
 
 
 def products(profile, gas):
-    """Return what is formed, net of what is fed: chlorides and couplings in kg/h, shares by mol and by mass."""
+    """Return what is formed, net of what is fed: couplings too in kg/h, shares by mol and mass."""
     formed = np.maximum(profile.outlet.moles - profile.fed, 0.0)
     chloride = chlorinated(gas)
     moles, mass = formed[chloride], (formed * gas.molar_mass)[chloride]
@@ -94,7 +111,11 @@ def products(profile, gas):
 def _formed(profile, gas):
     """Return the numbers of closed-shell organics that leave in larger amount than they are fed."""
     gain = profile.outlet.moles - profile.fed
-    return [i for i in range(len(gas.species)) if gas.kinds[i] == "molecule" and _has(gas, i, "C") and gain[i] > 1e-15]
+    return [
+        i
+        for i in range(len(gas.species))
+        if gas.kinds[i] == "molecule" and _has(gas, i, "C") and gain[i] > 1e-15
+    ]
 
 
 def times(profile):
@@ -177,6 +198,7 @@ def bracket(profile, mixed, gas):
 
 def mean_order(profile, gas, wall_loss):
     """Return the light order averaged over the HCl formed where it is lit; None in the dark."""
+    profile = spread(profile, gas)
     order = light_order(profile, gas, wall_loss)
     if len(order) == 1:
         return order[0]
@@ -186,3 +208,12 @@ def mean_order(profile, gas, wall_loss):
     return float(np.average(middle[lit], weights=made[lit])) if lit.any() else None
 
 
+def spread(profile, gas):
+    """Return the profile at stations that share the HCl formed evenly, with both sides of every lamp edge."""
+    acid = np.maximum.accumulate(profile.moles[:, gas.index["HCl"]])
+    even = np.searchsorted(acid, np.linspace(acid[0], acid[-1], ORDERS))
+    edge = np.flatnonzero(np.diff(profile.photolysis > 0))
+    last = len(acid) - 1
+    keep = np.unique(np.clip([0, last, *even, *edge, *(edge + 1)], 0, last))
+    names = ("z", "moles", "temperature", "coolant", "pressure", "photolysis")
+    return replace(profile, **{name: getattr(profile, name)[keep] for name in names})

@@ -8,7 +8,7 @@ from reactor.hazards import corners, dewpoint, exotherm, explosive
 from reactor.hazards.cautions import block
 from reactor.models import assemble
 from reactor.models.chain import dark_chain
-from reactor.rating.figures import adiabatic_rise
+from reactor.rating.figures import START_SHARE, adiabatic_rise
 from reactor.result import quantity
 
 RESPONSE = 10.0  # s; the plant's response for which the light-off temperature is given
@@ -17,7 +17,7 @@ ARCS = "mercury"
 
 
 class Dangers(NamedTuple):
-    """Results to print, the class at every station, the cautions, what was relied on, and words for verdicts."""
+    """Results to print, the class at every station, cautions, what was relied on, light-off temperature."""
 
     results: dict
     classes: np.ndarray
@@ -31,9 +31,17 @@ def assess(case, plant, profile, feed):
     gas = plant.gas
     book = rulebook(case, gas)
     found = mixtures(case, gas, book)
-    classes, worst = explosive.along(book, profile.moles, profile.temperature, profile.pressure, feed.temperature)
-    station = explosive.classify(book, profile.moles[worst], profile.temperature[worst], profile.pressure[worst],
-                                 premixed=False, preheat=feed.temperature)
+    classes, worst = explosive.along(
+        book, profile.moles, profile.temperature, profile.pressure, feed.temperature
+    )
+    station = explosive.classify(
+        book,
+        profile.moles[worst],
+        profile.temperature[worst],
+        profile.pressure[worst],
+        premixed=False,
+        preheat=feed.temperature,
+    )
     found.append(record(f"worst station, {profile.z[worst]:.3g} m", station, None))
     completion = exotherm.complete(book, profile.moles, profile.temperature)
     light_off = light_off_temperature(profile, gas, feed)
@@ -45,8 +53,9 @@ def assess(case, plant, profile, feed):
         "mtsr": quantity(completion.mtsr, "K"),
         "light_off_temperature": quantity(light_off, "K"),
         "dew_point_margin": quantity(dew, "K"),
-        "exotherm_margin": quantity(None if case.limits.hottest is None else
-                                    case.limits.hottest - profile.hottest[0], "K"),
+        "exotherm_margin": quantity(
+            None if case.limits.hottest is None else case.limits.hottest - profile.hottest[0], "K"
+        ),
     }
     flags = case_flags(case, profile, gas, results, plant)
     return Dangers(results, classes, block(flags), (*station.cited, *dewpoint.cited()), light_off)
@@ -68,8 +77,10 @@ def citations(case, gas):
 def mixtures(case, gas, book):
     """Return a record for each feed, for the inlet and for each injector at perfect mixing."""
     P, at_inlet = case.vessel.pressure, assemble.at_inlet(case, gas)
-    found = [record(f"feed {stream.name}", explosive.classify(book, stream.moles, stream.temperature, P), None)
-             for stream in at_inlet]
+    found = [
+        record(f"feed {stream.name}", explosive.classify(book, stream.moles, stream.temperature, P), None)
+        for stream in at_inlet
+    ]
     groups = [("inlet, mixed", at_inlet)]
     everything = list(at_inlet)
     for position, stream in assemble.injections(case, gas):
@@ -133,14 +144,15 @@ def light_off_temperature(profile, gas, feed):
     chlorine = feed.fractions[gas.index["Cl2"]]
     capacity = float(feed.fractions @ gas.heat_capacity(feed.temperature))
     propagation, equilibrium, fuel = dark_chain(feed, gas)
-    chain = exotherm.DarkChain(propagation, equilibrium, fuel, float(chlorine), feed.pressure, rise * capacity / chlorine,
-                               capacity)
+    chain = exotherm.DarkChain(
+        propagation, equilibrium, fuel, float(chlorine), feed.pressure, rise * capacity / chlorine, capacity
+    )
     found = exotherm.dark_ignition(chain, RESPONSE)
     return None if np.isnan(found) else found
 
 
 def dew_margin(profile, gas):
-    """Return the smallest distance of the coldest surface from the dew point along the reactor [K], None if dry."""
+    """Return the smallest distance of the coldest surface from the dew point [K], None if dry."""
     margins = []
     for i in np.unique(np.linspace(0, len(profile.z) - 1, DEW_STATIONS).round().astype(int)):
         share = profile.moles[i] / profile.moles[i].sum()
@@ -163,14 +175,15 @@ def case_flags(case, profile, gas, results, plant):
         "unknown_class": "UNKNOWN" in classes,
         "inside": "INSIDE" in classes,
         "calculated_only": any(m["calculated_only"] for m in results["mixtures"]),
-        "thermal_start": started > 0 and profile.total("thermal_starts") > 0.1 * started,
+        "thermal_start": started > 0 and profile.total("thermal_starts") > START_SHARE * started,
         "oxygen": share > 1e-6,
         "higher_alkanes": any(fed.get(s, 0.0) > 1e-3 * profile.fed.sum() for s in ("C2H6", "C3H8")),
         "hot_envelope": any(lamp.kind and "medium-pressure" in lamp.kind for lamp in case.lamp),
         "mercury": arcs,
         "glass": bool(case.lamp),
         "restrike": bool(case.lamp),
-        "condensing": results["dew_point_margin"]["value"] is not None and results["dew_point_margin"]["value"] < 10.0,
+        "condensing": results["dew_point_margin"]["value"] is not None
+        and results["dew_point_margin"]["value"] < 10.0,
         "steel": "steel" in case.vessel.shell_material,
         "adiabatic": case.cooling.mode == "none" or plant.wall.overall == 0.0,
         "soot": profile.hottest[0] > 873.15,

@@ -9,8 +9,11 @@ from reactor import library
 
 def inputs(case):
     """Return the typed entries as records {key, typed, si}."""
-    return tuple({"key": key, "typed": typed, "si": "" if si == typed else si} for key, typed, si, origin, _ in case.listing()
-                 if origin == "typed")
+    return tuple(
+        {"key": key, "typed": typed, "si": "" if si == typed else si}
+        for key, typed, si, origin, _ in case.listing()
+        if origin == "typed"
+    )
 
 
 def assumed(case):
@@ -31,6 +34,24 @@ def relied_on(plant, more):
 def sources(plant, more):
     """Return `relied_on` as records {what, source, status}."""
     return tuple(cited._asdict() for cited in relied_on(plant, more))
+
+
+def rates(gas):
+    """Return every rate constant as a record, the most uncertain first."""
+    from reactor.chemistry.phase import phase
+
+    reactions = phase(gas.path, gas.phase, gas.stamp, False)[0].reactions()
+    found = [
+        {
+            "what": gas.equations[i],
+            "factor": float(gas.f298[i]),
+            "valid": tuple(map(float, gas.valid[i])),
+            "source": reaction.input_data.get("source", gas.path.name),
+            "status": gas.status[i],
+        }
+        for i, reaction in enumerate(reactions)
+    ]
+    return sorted(found, key=lambda rate: -rate["factor"] if rate["factor"] > 0 else 0.0)
 
 
 def identity(case, gas):
@@ -60,4 +81,3 @@ def digest(which):
         if path.suffix in endings and not (which == "code" and relative.parts[0] in ("data", "cases")):
             found.update(relative.as_posix().encode() + b"\0" + path.read_bytes())
     return found.hexdigest()
-

@@ -4,12 +4,14 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor import chemistry, heat, photons
+from reactor import heat, photons
+from reactor.case import Sleeve
 from reactor.chemistry import wall as wall_chemistry
 from reactor.models.assemble import Plant, mixed_feed
 
 BODY = 0.01  # m, radius of a lamp outside the gas where it is not stated: an arc or phosphor tube of 20 mm
-TURNDOWN = 0.2  # share of full flow at which the sleeve skin is asked for again: the worst case for a hot sleeve
+TURNDOWN = 0.2  # share of full flow at which the sleeve skin is asked for again: it may be hotter
+THREAD = 1e-4  # of the shell: the sleeve of a tank that has none, of no volume to speak of
 
 
 def plant(case, gas, light, U_factor=1.0, flow=1.0):
@@ -69,8 +71,8 @@ def inner(case):
 
 
 def radii(case):
-    """Return sleeve and shell radius of the gas gap [m]; a tank counts as the ring of equal volume round its sleeves."""
-    sleeve, shell = case.sleeve.outside / 2, case.vessel.shell_inside / 2
+    """Return sleeve and shell radius of the gas gap [m]; a tank counts as a ring of equal volume."""
+    sleeve, shell = sleeve_of(case).outside / 2, case.vessel.shell_inside / 2
     if case.vessel.kind == "plug flow":
         return sleeve, shell
     number = sleeves(case)
@@ -81,18 +83,29 @@ def sleeves(case):
     """Return how many sleeves one vessel holds."""
     if case.vessel.kind == "plug flow":
         return 1
-    return case.sleeve.number or max(1, sum(lamp.number for lamp in case.lamp))
+    return sleeve_of(case).number or max(1, sum(lamp.number for lamp in case.lamp))
 
 
 def located(case):
     """Return the lamps of a case with the paths of their own spectra resolved."""
-    return [replace(lamp, spectrum=lamp.spectrum and str(case.path(lamp.spectrum)),
-                    lit_to=case.vessel.length if lamp.lit_to is None else lamp.lit_to) for lamp in case.lamp]
+    return [
+        replace(
+            lamp,
+            spectrum=lamp.spectrum and str(case.path(lamp.spectrum)),
+            lit_to=case.vessel.length if lamp.lit_to is None else lamp.lit_to,
+        )
+        for lamp in case.lamp
+    ]
 
 
 def sleeve_of(case):
-    """Return the sleeve of a case with the path of its own transmission resolved."""
-    return replace(case.sleeve, transmission=case.sleeve.transmission and str(case.path(case.sleeve.transmission)))
+    """Return the sleeve of a case, its transmission path resolved; a thread where there is none."""
+    if case.sleeve is None:
+        thread = THREAD * case.vessel.shell_inside
+        return Sleeve(outside=thread, thickness=0.1 * thread, number=1)
+    return replace(
+        case.sleeve, transmission=case.sleeve.transmission and str(case.path(case.sleeve.transmission))
+    )
 
 
 def heat_exchange(case, gas, light, feed, flow=1.0):
@@ -101,8 +114,11 @@ def heat_exchange(case, gas, light, feed, flow=1.0):
     if cooling.mode != "none" and cooling.medium:
         medium = heat.medium(cooling.medium)
     sides = heat.Cooling(
-        film=cooling.film or (medium and medium.film), temperature=cooling.inlet or feed.temperature,
-        fouling_gas=cooling.fouling_gas, fouling_coolant=cooling.fouling_coolant, overall=cooling.overall,
+        film=cooling.film or (medium and medium.film),
+        temperature=cooling.inlet or feed.temperature,
+        fouling_gas=cooling.fouling_gas,
+        fouling_coolant=cooling.fouling_coolant,
+        overall=cooling.overall,
         adiabatic=cooling.mode == "none",
     )
     lamp_heat = float(np.max(light.sleeve_heat, initial=0.0))
@@ -164,10 +180,17 @@ def several(exchange, number, share):
 
 def tank_shape(case):
     """Return the tank as the heat room wants it."""
-    return heat.Tank(diameter=case.vessel.shell_inside, height=case.vessel.length, stirring=case.vessel.stirring,
-                     impeller_diameter=case.vessel.impeller, sleeve_outside=case.sleeve.outside, sleeves=sleeves(case),
-                     thickness=case.vessel.shell_wall, conductivity=shell_conductivity(case),
-                     sleeve_emissivity=case.sleeve.emissivity)
+    return heat.Tank(
+        diameter=case.vessel.shell_inside,
+        height=case.vessel.length,
+        stirring=case.vessel.stirring,
+        impeller_diameter=case.vessel.impeller,
+        sleeve_outside=case.sleeve and case.sleeve.outside,
+        sleeves=sleeves(case),
+        thickness=case.vessel.shell_wall,
+        conductivity=shell_conductivity(case),
+        sleeve_emissivity=case.sleeve and case.sleeve.emissivity,
+    )
 
 
 def shell_conductivity(case):
@@ -177,7 +200,7 @@ def shell_conductivity(case):
 
 
 def coolant_capacity(case, medium):
-    """Return the heat capacity flow of the coolant of one tube [W/K]; inf where its temperature is constant."""
+    """Return the heat capacity flow of one tube's coolant [W/K]; inf at constant temperature."""
     if case.cooling.mode not in ("co-current", "counter-current"):
         return np.inf
     specific = medium.heat_capacity if medium else np.nan
@@ -192,7 +215,7 @@ def scaled(exchange, factor):
 
 
 def atom_loss(case, gas, feed):
-    """Return the first-order loss of chlorine atoms at the wall [1/s], stated or from sticking and diffusion."""
+    """Return the first-order loss of chlorine atoms at the wall [1/s], as stated or by sticking."""
     if case.chemistry.wall_loss is not None:
         return case.chemistry.wall_loss
     sticking = case.chemistry.wall_sticking

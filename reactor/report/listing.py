@@ -1,6 +1,6 @@
 """What a case says, for `reactor check`: typed, assumed, taken from the data, overridden."""
 
-from reactor.report.terminal import paragraph
+from reactor.report.layout import entry, paragraph
 
 
 def listing(case):
@@ -13,15 +13,22 @@ def listing(case):
         A case without faults (faults are reported before one exists).
     """
     rows = case.listing()
-    text = [case.title, ""]
-    for origin, heading in (("typed", "TYPED"), ("assumed", "ASSUMED, not supplied"), ("data", "TAKEN FROM THE DATA")):
+    text = [paragraph(case.title), ""]
+    for origin, heading in (
+        ("typed", "TYPED"),
+        ("assumed", "ASSUMED, not supplied"),
+        ("data", "TAKEN FROM THE DATA"),
+    ):
         block = [_row(*row) for row in rows if row[3] == origin]
         text += [f"{heading} ({len(block)})", *block, ""] if block else []
-    text += [f"changed on the command line: {key} = {new} (file: {old})" for key, old, new in case.deviations]
+    text += [
+        paragraph(f"changed on the command line: {key} = {new} (file: {old})", "", "    ")
+        for key, old, new in case.deviations
+    ]
     return "\n".join([*text, f"case {case.hash()[:12]}: no fault found", ""])
 
 
 def _row(key, typed, si, origin, why):
     if origin == "typed":
-        return paragraph(f"{key:<34} {typed:<22} {si if si != typed else ''}".rstrip(), "  ", "      ")
-    return paragraph(f"{key} = {si}: {why}" if si not in ("", "None") else f"{key}: {why}", "  ", "      ")
+        return entry(key, typed, si)
+    return paragraph(f"{key} = {si}: {why}" if si not in ("", "None") else f"{key}: {why}", "", "    ")

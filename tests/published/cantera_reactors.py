@@ -9,7 +9,6 @@ multipliers of their reactions, and as heat the power of the photons absorbed an
 from typing import NamedTuple
 
 import cantera as ct
-import numpy as np
 
 
 class Chemistry(NamedTuple):
@@ -44,7 +43,7 @@ class Found(NamedTuple):
 
 
 def _heated(base):
-    """Return a Cantera reactor class of which every evaluation sets J, and adds photon power and wall heat."""
+    """Return a Cantera reactor class that sets J and adds photon power and wall heat at each evaluation."""
 
     class Heated(base):
         evaluations = 0
@@ -93,9 +92,11 @@ def plug_flow(chemistry, composition, T, P, time, heat, rtol=1e-9, atol=1e-18):
     return Found(dict(zip(gas.species_names, gas.X, strict=True)), gas.T, gas.P, time, slug.evaluations)
 
 
-def stirred_tank(chemistry, composition, T, P, flow, volume, heat, start=None, residences=60, rtol=1e-9, atol=1e-16):
+def stirred_tank(
+    chemistry, composition, T, P, flow, volume, heat, start=None, residences=60, rtol=1e-9, atol=1e-16
+):
     """
-    Return what a stirred tank of constant volume settles at: fed, throttled to its pressure, followed for long.
+    Return what a stirred tank of constant volume settles at: fed, throttled, followed for long.
 
     Parameters
     ----------

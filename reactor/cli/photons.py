@@ -1,18 +1,22 @@
-"""The command `reactor photons`."""
+"""The command that shows where the light goes."""
 
 import click
+
+from reactor.cli.common import OVERRIDE, STRICT, emphasis, show
 
 
 @click.command()
 @click.argument("case")
-@click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True,
-              help='Override one entry of the case, like --set vessel.length="2 m"; may be repeated.')
-@click.option("--strict", is_flag=True, help="Refuse every default that the case file does not state.")
+@OVERRIDE
+@STRICT
 @click.option("--figure", metavar="FILE", help="Draw the figure into a .svg, .png or .pdf file.")
 @click.option("--lamp-sheet", is_flag=True, help="Print the lamp data sheet for an enquiry instead.")
 @click.option("--json", "as_json", is_flag=True, help="Print the record as one JSON object, SI units.")
 def photons(case, overrides, strict, figure, lamp_sheet, as_json):
-    """Show where the light of a CASE goes: lamp over gas, absorbed shares, ledger, figures of merit."""
+    """Show where the light of a case goes.
+
+    Prints lamp over gas, absorbed shares by wavelength and gap, best wavelength, ledger, figures of merit of CASE.
+    """
     import json
 
     from reactor.case import load
@@ -27,6 +31,6 @@ def photons(case, overrides, strict, figure, lamp_sheet, as_json):
         draw(record, figure)
         click.echo(f"{figure} written", err=True)
     if as_json:
-        click.echo(json.dumps(record, indent=1))
+        show(json.dumps(record, indent=1) + "\n")
     else:
-        click.echo((sheet if lamp_sheet else render)(record), nl=False)
+        show((sheet if lamp_sheet else render)(record, emphasis()))

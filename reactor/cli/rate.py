@@ -1,0 +1,42 @@
+"""The command that rates a case."""
+
+import sys
+
+import click
+
+from reactor.cli.common import FAIL_ON, OVERRIDE, STRICT, emphasis, exit_code, show, write
+
+
+@click.command()
+@click.argument("case")
+@OVERRIDE
+@STRICT
+@click.option(
+    "--json", "as_json", is_flag=True, help="Print the result as one JSON object (names as in the README)."
+)
+@click.option("--save", metavar="FILE", help="Save the result as JSON for later printing and comparison.")
+@click.option(
+    "--profile", metavar="FILE", help="Write the profile along the tube as CSV, units in the header."
+)
+@FAIL_ON
+def rate(case, overrides, strict, as_json, save, profile, fail_on):
+    """Rate the reactor of a case file.
+
+    Prints conversion, products, light, heat, hazards and verdicts of CASE. With --save - or --profile - the
+    file goes to standard output and the report to standard error.
+    """
+    from reactor.case import load
+    from reactor.rating import rate as run
+    from reactor.report.terminal import render
+
+    result = run(load(case, overrides, strict))
+    if save:
+        write(save, result.to_json() + "\n")
+    if profile:
+        from reactor.report.export import profile_csv
+
+        write(profile, profile_csv(result))
+    show(
+        result.to_json() + "\n" if as_json else render(result, emphasis()), to_stderr="-" in (save, profile)
+    )
+    sys.exit(exit_code(result, strict, fail_on))
