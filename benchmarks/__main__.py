@@ -3,9 +3,9 @@
 import platform
 import sys
 
-from benchmarks import single
+from benchmarks import field, single
 
-FIGURES = {"single": single.run}
+FIGURES = {"single": single.run, "field": field.run}
 
 
 def main(names):

@@ -16,6 +16,7 @@ from reactor.photons import even
 
 ROUNDS, REST = 3, 0.003  # solves at most, and the change of J_eff/J at which they end
 WARM = 350.0  # K
+STATIONS = 20  # of each section where the light order is found
 AVOGADRO = 6.02214076e23
 
 
@@ -71,7 +72,8 @@ def depths(light, profile):
 def curves(plant, profile):
     """Return the kernel's curve of J_eff/J for each section, with the light order found along the profile."""
     light = plant.light
-    order, depth = light_order(profile, plant.gas, plant.wall_loss), depths(light, profile)
+    depth = depths(light, profile)
+    order = light_order(profile, plant.gas, plant.wall_loss, spaced(depth, profile.z, light.edges))
     sigma = sigma_at(light, WARM)[0]
     found = []
     for weight, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
@@ -82,6 +84,18 @@ def curves(plant, profile):
         x, first = np.unique(depth[here], return_index=True)
         known = order[here][first]
         found.append(even.curve(light.cells, weight, sigma, lambda at, x=x, known=known: np.interp(at, x, known)))
+    return found
+
+
+def spaced(depth, z, edges):
+    """Return the numbers of few stations of each section, evenly spaced in ln of the optical thickness."""
+    found = set()
+    for start, stop in zip(edges, edges[1:], strict=False):
+        here = np.flatnonzero((z >= start) & (z <= stop))
+        if len(here):
+            rank = here[np.argsort(depth[here])]
+            wanted = np.linspace(depth[rank[0]], depth[rank[-1]], STATIONS)
+            found |= set(rank[np.minimum(np.searchsorted(depth[rank], wanted), len(rank) - 1)].tolist())
     return found
 
 

@@ -107,7 +107,7 @@ def effective(J, volume, order):
     --------
     >>> J, volume = np.array([0.5, 1.5]), np.array([0.5, 0.5])
     >>> print([f"{effective(J, volume, p):.4f}" for p in (0.5, 0.75, 1.0)])
-    ['0.9330', '0.9817', '1.0000']
+    ['0.9330', '0.9507', '1.0000']
     """
     p = min(max(order, 0.5), 1.0)
     if p > 0.9999:

@@ -74,8 +74,8 @@ def notes(lamps, known, sleeve, geometry, spectrum, length):
         found.append("The radial law is a lower bracket: it understates a thin gas by 21 to 36 %.")
     if any(each.emission is None for each in lamps) and not shape.panel:
         found.append(
-            f"The law of emission ({law}) is that of the class of lamp, not a measured one: {ISOTROPIC} and {SINE} "
-            "are up to 20 % apart in a thin gas (see the photon report)."
+            f"The law of emission ({law}) is that of the class of lamp, not a measured one; between {ISOTROPIC} and "
+            f"{SINE} a thin gas behind no window absorbs up to 20 % less (the photon report shows it for this case)."
         )
     if any(known_one.spectrum.cited and entry.status == "memory" for known_one in known
            for entry in known_one.spectrum.cited):  # fmt: skip

@@ -249,6 +249,8 @@ def _accounts(sources, line, capture, flows):
         return Account(name, float(watts.sum()), float((watts / photon_energy(line)).sum()) if len(line) else 0.0)
 
     in_band = radiant * followed
+    outside = in_band * passed - into
+    outside = np.where(abs(outside) < 1e-12 * in_band, 0.0, outside)
     return (
         Account("mains", mains, None),
         Account("driver loss", mains - at_lamp, None),
@@ -258,6 +260,6 @@ def _accounts(sources, line, capture, flows):
         entry("no data", radiant * bands["no data"]),
         entry("out of band", radiant * bands["out of band"]),
         entry("lost in sleeve and deposit", in_band * (capture - passed)),
-        entry("never enters", in_band * (1 - capture) + in_band * passed - into),
+        entry("never enters", in_band * (1 - capture) + outside),
         entry("into gas", into),
     )

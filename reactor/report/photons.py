@@ -95,8 +95,8 @@ def ledger(record, emphasis):
     """Print the ledger, all tubes."""
     rows = ["account                                  W         mol/s   part of"]
     for r in record["ledger"]:
-        flow = "" if r["photons"] is None else f"{r['photons']:.3e}"
-        rows.append(f"{r['name']:<30} {figure(r['power']):>12}  {flow:>12}   {r['part_of']}")
+        flow = "" if r["photons"]["value"] is None else f"{r['photons']['value']:.3e}"
+        rows.append(f"{r['name']:<30} {figure(r['power']['value']):>12}  {flow:>12}   {r['part_of']}")
     return section("LEDGER", rows, emphasis)
 
 
