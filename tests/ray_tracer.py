@@ -55,20 +55,19 @@ class Tracer:
             stop = p + np.where(np.isfinite(step), step, 0.0)[:, None] * d
             level = stop[:, 2]
             gone = ~np.isfinite(step)
-            if self.gas == "tubes":  # between the passes a photon above or below the tubes is out
-                outside = ((level < 0) | (level > self.length)) & (kind == 0)
-                fate[alive[outside & entered[alive]]] = ENDS
-                gone |= outside
+            outside = ~in_gas & np.isfinite(step) & ((level < 0) | (level > self.length)) & (bounce > 0 or self.gas == "tubes")
+            fate[alive[outside & entered[alive]]] = ENDS  # z only goes one way: it does not come back
+            gone |= outside
             kept = rng.random(len(alive)) < self.reflectance
             hit = (kind == 1) & ~(kept & (kind == 1))
-            black = hit | (kind == 2)
+            black = (hit | (kind == 2)) & ~gone
             ended = black & ~died & ~over
             fate[alive[ended & entered[alive]]] = WALL
             fate[alive[gone & ~died & ~over & entered[alive] & (fate[alive] == MISSED)]] = WALL
             turn = (kind == 1) & kept
             d = np.where(turn[:, None], d - 2 * (d * normal).sum(axis=1, keepdims=True) * normal, d)
             go = ~(died | over | gone | black)
-            place[alive], way[alive] = stop + 1e-9 * d, d
+            place[alive], way[alive] = stop + 1e-7 * d, d
             alive = alive[go]
             if not len(alive):
                 break
@@ -131,16 +130,17 @@ class Tracer:
         enter, leave = self._nearest(p, d, self.tubes, self.bore)
         inside = np.zeros(count, bool)
         for centre in self.tubes:
-            inside |= ((p[:, :2] - centre) ** 2).sum(axis=1) < self.bore**2 * (1 - 1e-7)
+            inside |= ((p[:, :2] - centre) ** 2).sum(axis=1) < self.bore**2 * (1 - 1e-9)
         step = np.where(inside, leave, enter)
         lamp = np.full(count, np.inf) if fresh else self._nearest(p, d, self.lamps, self.body)[0]
         wall, normal = self._mirror(p, d)
+        inside &= (p[:, 2] >= 0) & (p[:, 2] <= self.length)
         kind = np.where(inside, 0, np.where((lamp < step) & (lamp < wall), 2, np.where(wall < step, 1, 0)))
         return np.where(inside, step, np.minimum(np.minimum(step, lamp), wall)), kind, inside, normal
 
     def _between(self, p, d, fresh):
         """Gas between sleeves and shell: from the lamp to the sleeve first, then stretches of gas."""
-        within = np.min([((p[:, :2] - c) ** 2).sum(axis=1) for c in self.lamps], axis=0) < self.body**2 * (1 - 1e-7)
+        within = np.min([((p[:, :2] - c) ** 2).sum(axis=1) for c in self.lamps], axis=0) < self.body**2 * (1 - 1e-9)
         far = self._nearest(p, d, self.lamps, self.body)[1]
         near = self._nearest(p, d, self.lamps, self.body)[0]
         shell = self._nearest(p, d, np.zeros((1, 2)), self.shell)[1]
@@ -162,8 +162,8 @@ class Tracer:
             real = root > 0
             half = np.sqrt(np.where(real, root, 0.0))
             first, last = (-b - half) / flat, (-b + half) / flat
-            enter = np.where(real & (first > 1e-8), np.minimum(enter, first), enter)
-            leave = np.where(real & (last > 1e-8), np.minimum(leave, last), leave)
+            enter = np.where(real & (first > 1e-9), np.minimum(enter, first), enter)
+            leave = np.where(real & (last > 1e-9), np.minimum(leave, last), leave)
         return enter, leave
 
     def _mirror(self, p, d):

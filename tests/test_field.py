@@ -1,5 +1,6 @@
 """Finite arcs in every geometry against rays traced one by one, merged lines, local radical pools, the photon report."""
 
+from pathlib import Path
 from types import SimpleNamespace
 
 import numpy as np
@@ -9,7 +10,7 @@ import reactor
 from ray_tracer import ABSORBED, ENDS, MISSED, Tracer
 from reactor import photons
 from reactor.errors import CaseError
-from reactor.photons import Annulus, Channel, Immersed, Tubes, chlorine, lamps, merge
+from reactor.photons import Annulus, Channel, Immersed, Tubes, chlorine, field, lamps, merge
 from reactor.photons.energy import photon_energy
 from reactor.photons.laws import ISOTROPIC, LAMBERTIAN, SINE, VOLUMETRIC
 
@@ -94,6 +95,8 @@ def test_a_finite_arc_feeds_absorbed_light_and_ends_like_rays_traced_one_by_one(
     mine = {"entering": flow, "absorbed": flow * tau * found.absorbed[0](x)[0], "ends": flow * found.ends[0](x)[0]}
     theirs = {"entering": (fate != MISSED).mean(), "absorbed": (fate == ABSORBED).mean(), "ends": (fate == ENDS).mean()}
     even = LATTICE if isinstance(shape, Tubes | Immersed) else 3e-4
+    if isinstance(shape, Tubes):  # light that leaves a tube sideways for good counts as outer wall, wherever it flies
+        del theirs["ends"]
     for key, value in theirs.items():
         error = 3 * np.sqrt(max(value * (1 - value), 1 / N) / N)
         assert mine[key] == approx(value, abs=error + even), key
@@ -121,9 +124,11 @@ def test_light_along_a_bleaching_tube_stays_close_to_traced_rays(law, radius, ho
 
 
 def test_light_at_the_end_plane_of_an_arc_is_half_of_that_at_its_middle(clear):
-    # Source: closed form of a finite line (computed). Kind: limit.
+    # Source: closed form of a finite line in clear gas, at mid-gap (computed). Kind: limit.
     found = clear(Annulus(0.01, 0.02), ISOTROPIC, arc=(0.3, 0.7))
-    assert found.along(0.3)[0] / found.along(0.5)[0] == approx(0.5, abs=0.01)
+    ratio = field.finite_fluence(0.015, 0.2, 0.4) / field.finite_fluence(0.015, 0.0, 0.4)
+    assert ratio == approx(0.5, abs=0.02)
+    assert found.along(0.3)[0] / found.along(0.5)[0] == approx(ratio, rel=3e-3)
 
 
 def test_two_arcs_with_a_dark_gap_add_up(clear):
@@ -155,12 +160,12 @@ def test_merged_lines_absorb_like_all_bins_of_the_spectrum(kind):
     lines = merge.merged(wavelength, flow)
     assert len(lines.energy) <= 30
     assert lines.mix @ flow @ lines.energy == approx(flow @ photon_energy(wavelength), rel=1e-12)
-    annulus = photons.field.Field(ISOTROPIC, 0.03, 0.077)
+    annulus = field.Field(ISOTROPIC, 0.03, 0.077)
     for T in (280.0, 450.0, 700.0):
         t = ((T - 550) / 350) ** np.arange(chlorine.FIT_TERMS)
         for column in np.geomspace(1e18, 1e27, 19):
-            every = flow @ photons.field.absorbed(annulus, chlorine.sigma_fit(wavelength) @ t * column)
-            few = lines.mix @ flow @ photons.field.absorbed(annulus, lines.sigma @ t * column)
+            every = flow @ field.absorbed(annulus, chlorine.sigma_fit(wavelength) @ t * column)
+            few = lines.mix @ flow @ field.absorbed(annulus, lines.sigma @ t * column)
             assert few == approx(every, rel=1e-4)
 
 
@@ -214,14 +219,15 @@ def test_the_kernel_has_exact_slopes_of_uneven_light():
     # Kind: limit; central differences of the compiled kernel itself, and J of the light room's own arithmetic.
     from reactor import chemistry
     from reactor.kernel.plugflow import Balance
-    from reactor.models import assemble, plug_flow, pools
+    from reactor.models import SOLVERS, assemble, pools
+    from reactor.models.plug_flow import _tube
     from reactor.rating.plant import lamps as lamps_of
     from reactor.rating.plant import plant
 
     case = reactor.load("cases/lapwing_ten_mercury.toml", overrides=["chemistry.radicals=local"])
     gas = chemistry.mechanism(None)
-    settled, profile, _ = pools.settle(case, plant(case, gas, lamps_of(case)), plug_flow.solve)
-    tube = plug_flow._tube(case, settled)
+    settled, profile, _ = pools.settle(case, plant(case, gas, lamps_of(case)), SOLVERS["plug flow"])
+    tube = _tube(case, settled)
     inlet = assemble.mixed_inlet(case, gas)
     balance = Balance(tube, tube.sections[0], inlet.mass(gas) / 4)
     y = np.concatenate((profile.moles[40] / inlet.mass(gas), (420.0, 303.0, 1.5e5)))
@@ -250,7 +256,7 @@ GEOMETRIES = {
 
 def rewritten(vessel):
     """Return a shipped case as text with another gas space."""
-    text = open("cases/lapwing_ten_mercury.toml").read()
+    text = Path("cases/lapwing_ten_mercury.toml").read_text()
     head, rest = text.split('geometry = "annulus"\n')
     rest = rest.split("\n", 1)[1].replace('outside = "60 mm"\n', "").replace('shell_material = "carbon steel"\n', "")
     return head + vessel + "\n" + rest

@@ -133,7 +133,8 @@ def light(lamps, sleeve, shape, length):
     law, radius = lot.law(lamps, known, shape)
     bands = lot.bands(line, radiant)
     followed = bands["followed"]
-    rays = grouped(rays_of(shape, law, radius))
+    every = rays_of(shape, law, radius)
+    rays = grouped(every)
     phi, weight = slopes(shape.slopes(law), SLOPES if shape.name == "annulus" else SLOPES // 2)
     bright = np.where(followed, radiant, 0.0) / photon_energy(line) if len(line) else radiant
     arrive = rays.share[:, None] * weight / rays.share.sum()
@@ -142,6 +143,8 @@ def light(lamps, sleeve, shape, length):
     reach = float(rays.share @ arcs.middle(rays)[1] / rays.share.sum())
     borders = arcs.edges({(s.start, s.stop) for s in sources}, reach, length)
     each_along = [arcs.along(rays, phi, slant, (s.start, s.stop), borders, shape.gap) for s in sources]
+    if rays is not every:
+        each_along = [_refined(one, every, rays, (phi, slant.sum(axis=0)), shape.gap) for one in each_along]
     photons = [(s.radiant * passed * rays.capture / photon_energy(line))[followed] for s in sources]
     flow = [p.sum() for p in photons]
     along = None
@@ -163,6 +166,14 @@ def light(lamps, sleeve, shape, length):
         cited=remarks.cited(known, sleeve, law, shape),
         notes=remarks.notes(lamps, known, sleeve, (law, radius, shape), (line, radiant, bands), length),
     )  # fmt: skip
+
+
+def _refined(one, every, few, slopes_of, gap):
+    """Return the light of an arc traced with few rays, with the ways of every ray of long lamps put in for theirs."""
+    whole = spread.tilted(*slopes_of)
+    exact, rough = (spread.spread(rays.after / gap, (rays.weight - rays.next_weight) * (rays.share / rays.capture)[rays.ray],
+                                  np.zeros(len(rays.ray), int), 1) @ whole for rays in (every, few))  # fmt: skip
+    return one._replace(wall=one.wall + one.entering[:, None] * (exact - rough))
 
 
 def _alike(photons):

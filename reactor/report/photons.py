@@ -1,7 +1,7 @@
 """The photon report and the lamp data sheet as text; they work from the plain record of `rating.photonic`."""
 
 from reactor.report.numbers import NOTHING, figure
-from reactor.report.terminal import line, paragraph, section
+from reactor.report.layout import line, paragraph, section
 
 DAY = 86400.0
 DEFINITIONS = (
@@ -82,11 +82,12 @@ def laws(record, emphasis):
     found = record["laws"]
     if not found["rows"]:
         return ""
-    rows = ["law                          into gas   absorbed (all gas as at the inlet)"]
+    rows = ["law                  into gas   absorbed (all gas as at the inlet)"]
     used = next((r["absorbed"] for r in found["rows"] if r["used"]), None)
     for r in found["rows"]:
         ratio = f"{r['absorbed'] / used:6.3f} of the law used" if used else ""
-        rows.append(f"{r['law']:<26} {r['into_gas']:.3e}  {r['absorbed']:.3e} mol/s  {ratio}{' <' if r['used'] else ''}")
+        mark = " <" if r["used"] else ""
+        rows.append(f"{r['law']:<20} {r['into_gas']:.3e}  {r['absorbed']:.3e} mol/s  {ratio}{mark}")
     word = "typed in the case" if found["known"] else "that of the class of lamp, unknown for this one: take the bracket"
     return section("EMISSION LAWS (one tube)", [*rows, paragraph(f"The law is {word}.")], emphasis)
 
@@ -103,10 +104,10 @@ def ledger(record, emphasis):
 def bands(record, emphasis):
     """Print the ledger by spectral band."""
     names = ("at window", "into gas", "absorbed", "outer wall", "ends")
-    rows = ["nm             " + "".join(f"{name:>12}" for name in names) + "   [mol/s]"]
+    rows = ["nm             " + "".join(f"{name:>12}" for name in names)]
     for r in record["bands"]:
         rows.append(f"{r['band'][0]:>4} to {r['band'][1]:<7}" + "".join(f"{r[name]:12.2e}" for name in names))
-    return section("LEDGER BY BAND (all tubes)", rows, emphasis)
+    return section("LEDGER BY BAND (all tubes, mol/s)", rows, emphasis)
 
 
 def merit(record, emphasis):
