@@ -3,9 +3,10 @@
 import platform
 import sys
 
-from benchmarks import single
+from benchmarks import kernel, single
 
-FIGURES = {"single": single.run}
+FIGURES = {"single": kernel.single, "single_lsoda": kernel.single_lsoda, "sweep": kernel.sweep,
+           "size_scaling": kernel.size_scaling, "program": single.run}
 
 
 def main(names):

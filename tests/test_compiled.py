@@ -55,10 +55,10 @@ def test_one_case_alone_has_the_digits_it_has_in_any_company(jobs):
         assert [digits(path) for path in found] == [alone[i] for i in order]
 
 
-@pytest.mark.parametrize("wide", [1, 2, 4])
-def test_one_two_and_four_lanes_give_equal_digits(jobs, wide):
+@pytest.mark.parametrize("wide", [2, 4, 8])
+def test_one_or_several_lanes_give_equal_digits(jobs, wide):
     if wide > native.library().reactor_kernel_lanes():
-        pytest.skip("this processor has no AVX2")
+        pytest.skip(f"this processor has no registers for {wide} lanes")
     results, counts, rows = marched(jobs, wide)
     expected = marched(jobs, 1)
     assert np.array_equal(results, expected[0])
@@ -90,7 +90,7 @@ def test_a_solve_leaves_its_inputs_as_they_were(jobs):
 def fourth_order(function, y, along):
     """Return the derivative of a vector function along a step, by differences of fourth order, and its rounding."""
     f = [function(y + m * along) for m in (-2, -1, 1, 2)]
-    return (f[0] - 8 * f[1] + 8 * f[2] - f[3]) / 12, 1e-14 * max(np.abs(v).max() for v in f)
+    return (f[0] - 8 * f[1] + 8 * f[2] - f[3]) / 12, 1e-12 * np.abs(f).max(axis=0)
 
 
 def test_derivatives_of_the_rates_are_those_by_differences_of_fourth_order():
@@ -102,11 +102,11 @@ def test_derivatives_of_the_rates_are_those_by_differences_of_fourth_order():
         for k in (*rng.integers(0, K, 3), CL2):
             step = 1e-3 * c.sum()
             slope, rounding = fourth_order(lambda c, T=T: RATES.production(c, T, 5e-3, 0.7), c, step * np.eye(K)[k])
-            assert np.abs(slope / step - by_c[:, k]).max() <= 1e-6 * np.abs(by_c[:, k]).max() + rounding / step
+            assert np.all(np.abs(slope / step - by_c[:, k]) <= 1e-6 * np.abs(by_c[:, k]).max() + rounding / step)
         slope, rounding = fourth_order(lambda T, c=c: RATES.production(c, T, 5e-3, 0.7), T, 0.1)
-        assert np.abs(slope / 0.1 - by_T).max() <= 1e-6 * np.abs(by_T).max() + rounding / 0.1
+        assert np.all(np.abs(slope / 0.1 - by_T) <= 1e-6 * np.abs(by_T).max() + rounding / 0.1)
         slope, rounding = fourth_order(lambda J, c=c, T=T: RATES.production(c, T, J, 0.7), 5e-3, 1e-3)
-        assert np.abs(slope / 1e-3 - by_J).max() <= 1e-6 * np.abs(by_J).max() + rounding / 1e-3
+        assert np.all(np.abs(slope / 1e-3 - by_J) <= 1e-6 * np.abs(by_J).max() + rounding / 1e-3)
 
 
 def test_the_matrix_of_a_tube_is_that_by_differences_of_fourth_order():
@@ -118,10 +118,10 @@ def test_the_matrix_of_a_tube_is_that_by_differences_of_fourth_order():
         for y in path.state[[len(path.z) // 3, len(path.z) // 2]]:
             found, scale = balance.jacobian(y), np.maximum(np.abs(y) * 1e-4, 1e-6)
             scale[K:] = 1e-4 * y[K:]
-            columns = [fourth_order(lambda y, balance=balance: balance.slope(y)[:K + 3], y, scale * np.eye(K + 3)[k])
+            columns = [fourth_order(lambda y, of=balance: of.slope(y)[:K + 3], y, scale * np.eye(K + 3)[k])
                        for k in range(K + 3)]
             expected = np.array([slope for slope, _ in columns]).T / scale
-            rounding = np.array([np.full(K + 3, r) for _, r in columns]).T / scale
+            rounding = np.array([rounding for _, rounding in columns]).T / scale
             allowed = 1e-6 * np.abs(expected).max(axis=1, keepdims=True) + rounding
             assert np.all(np.abs(found - expected) <= allowed)
 
@@ -211,7 +211,8 @@ def test_a_stuck_case_is_dropped_with_its_reason_and_the_lane_goes_on(jobs):
 
 
 @pytest.mark.parametrize("change", [
-    {"T": float("nan")}, {"P": float("nan")}, {"T": -5.0}, {"mass_flow": 0.0}, {"n": np.full(K, np.nan)}, {"n": np.zeros(K)},
+    {"T": float("nan")}, {"P": float("nan")}, {"T": -5.0}, {"mass_flow": 0.0}, {"n": np.full(K, np.nan)},
+    {"n": np.zeros(K)},
 ])
 def test_numbers_that_are_none_are_dropped_with_a_reason(jobs, change):
     # -ffast-math would have removed the test for nan. The neighbours do not notice.
