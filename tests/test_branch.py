@@ -56,9 +56,9 @@ def test_every_point_of_the_branch_is_a_zero_of_both_balances(over_light):
 def test_the_ends_of_the_branch_are_the_steady_states_found_at_the_edge(over_light):
     # Limit: the scan over temperature at the first light finds both the cold state and the one in the middle.
     found = tank.steady_states(lit(-6.0), 322.0, 1300.0)
-    assert over_light[0].state.T == approx(found[0].T, abs=1e-6)
+    assert approx(found[0].T, abs=1e-6) == over_light[0].state.T
     assert over_light[-1].parameter == approx(-6.0, abs=1e-9)
-    assert over_light[-1].state.T == approx(found[1].T, abs=1e-4)
+    assert approx(found[1].T, abs=1e-4) == over_light[-1].state.T
 
 
 def test_a_branch_in_feed_temperature_passes_through_the_states_on_its_way():

