@@ -3,9 +3,10 @@
 import platform
 import sys
 
-from benchmarks import field, single
+from benchmarks import field, kernel, single
 
-FIGURES = {"single": single.run, "field": field.run}
+FIGURES = {"single": kernel.single, "single_lsoda": kernel.single_lsoda, "sweep": kernel.sweep,
+           "size_scaling": kernel.size_scaling, "program": single.run, "field": field.run}
 
 
 def main(names):

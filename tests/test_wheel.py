@@ -66,7 +66,6 @@ def test_the_unpacked_wheel_rates_a_shipped_case_from_elsewhere(wheel, tmp_path)
     assert "CAUTIONS" in found.stdout
 
 
-@pytest.mark.slow
 def test_the_wheel_installs_into_an_empty_environment_and_runs(wheel, tmp_path):
     venv.create(tmp_path / "empty", with_pip=True)
     scripts = tmp_path / "empty" / ("Scripts" if os.name == "nt" else "bin")

@@ -18,9 +18,12 @@ from pathlib import Path
 
 HERE = Path(__file__).parent
 # name, cases side by side, width of long rows, flags; the wide ones on x86-64 alone, chosen when the kernel is loaded
-BUILDS = (("plain1", 1, 2, ()), ("plain2", 2, 2, ()), ("wide1", 1, 4, ("-mavx2",)), ("wide4", 4, 4, ("-mavx2",)))
-FLAGS = ("-std=c11", "-O3", "-ffp-contract=off", "-fno-math-errno", "-fvisibility=hidden", "-Wall", "-Wextra", "-Wno-psabi",
-         "-D_POSIX_C_SOURCE=200809L")
+BUILDS = (
+    ("plain1", 1, 2, ()), ("plain2", 2, 2, ()), ("wide1", 1, 4, ("-mavx2",)), ("wide4", 4, 4, ("-mavx2",)),
+    ("wide8", 8, 8, ("-mavx512f", "-mavx512dq", "-mavx512vl", "-mprefer-vector-width=512")),
+)
+FLAGS = ("-std=c11", "-O3", "-ffp-contract=off", "-fno-math-errno", "-fvisibility=hidden", "-Wall", "-Wextra",
+         "-Wno-psabi", "-D_POSIX_C_SOURCE=200809L")
 SANITIZE = ("-g", "-O1", "-fsanitize=address,undefined", "-fno-sanitize-recover=all", "-fno-omit-frame-pointer")
 
 

@@ -10,7 +10,7 @@ import numpy as np
 
 from reactor.errors import ReactorError
 
-VERSION = 3  # FACE_VERSION of native/batch.h
+VERSION = 4  # FACE_VERSION of native/batch.h
 REASONS = (  # by status of native/batch.h; where, steps and seconds are filled in
     "",
     "the budget of {steps} steps was used up {where}; try a looser solver.rtol",
@@ -27,26 +27,33 @@ ROW_MORE = 5 + TOTALS  # a station: z, flow, n..., P, Tc, T, totals
 _address, _i64 = ctypes.c_void_p, ctypes.c_int64
 
 
+def _fields(**kinds):
+    """Return the fields of a structure: space-separated names by kind."""
+    return [(name, kind) for kind, names in kinds.values() for name in names.split()]
+
+
 class Batch(ctypes.Structure):
     """`Batch` of native/batch.h: cases in, results out, all as addresses of flat arrays."""
 
-    _fields_ = [(name, _i64) for name in ("count", "tank", "lines", "degree", "stations")] + [
-        (name, _address) for name in ("cases", "sections", "pool", "links", "section_links", "results", "counts", "paths")
-    ]
+    _fields_ = _fields(
+        counts=(_i64, "count tank lines degree stations"),
+        arrays=(_address, "cases sections pool tables links section_links results counts paths"),
+    )
 
 
 class RatesAt(ctypes.Structure):
     """`Rates` of native/batch.h."""
 
-    _fields_ = ([(name, _address) for name in ("A", "low_A", "c")] + [(name, ctypes.c_double) for name in ("T", "J", "loss")]
-                + [(name, _address) for name in ("cp", "cp_slope", "h", "g", "forward", "reverse", "production", "by_c",
-                                                 "by_T", "by_J")])
+    _fields_ = _fields(
+        inputs=(_address, "A low_A c"), state=(ctypes.c_double, "T J wall_loss"),
+        outputs=(_address, "cp cp_slope h g forward reverse production by_c by_T by_J"),
+    )
 
 
 class Point(ctypes.Structure):
     """`Point` of native/batch.h; task SLOPE gives slopes, HELD the composition at rest at held temperatures."""
 
-    _fields_ = [("task", _i64), ("count", _i64)] + [(name, _address) for name in ("y", "f", "totals", "jacobian")]
+    _fields_ = _fields(task=(_i64, "task count"), arrays=(_address, "y f totals jacobian"))
 
 
 SLOPE, HELD, NEAR = 0, 1, 2
@@ -95,7 +102,7 @@ def lanes():
     """Return how many cases this processor solves side by side; REACTOR_LANES asks for fewer."""
     most = library().reactor_kernel_lanes()
     wanted = os.environ.get("REACTOR_LANES", "")
-    return int(wanted) if wanted in ("1", "2") else most
+    return int(wanted) if wanted in ("1", "2", "4") else most
 
 
 def memory():

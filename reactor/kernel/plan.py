@@ -49,7 +49,7 @@ def plan(tables, photolysis, wall, chlorine, starts):
     starts : sequence of int
         Reactions whose reverse frees two chlorine atoms.
     """
-    numbers = (int(photolysis), int(wall), float(tables.reference_pressure), int(chlorine), tuple(int(s) for s in starts))
+    numbers = (int(photolysis), int(wall), float(tables.reference_pressure), int(chlorine), tuple(map(int, starts)))
     key = _key(tables, numbers)
     path = folder() / f"{key[:32]}.plan"
     found = _read(path, key)

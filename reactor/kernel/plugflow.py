@@ -187,7 +187,7 @@ def stream(jobs, between=None, threads=None):
 
 def _solve(jobs, stations, wide):
     """Return the paths of jobs, or reasons; those on one mechanism go to the kernel together."""
-    groups: dict[int, tuple] = {}
+    groups: dict = {}
     for number, job in enumerate(jobs):
         plan = job.tube.rates.plan(job.tube.chlorine, job.tube.starts)
         groups.setdefault(id(plan), (plan, []))[1].append(number)

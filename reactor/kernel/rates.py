@@ -48,7 +48,7 @@ class Rates:
         part = [out.ctypes.data + 8 * n for n in (0, K, 2 * K, 3 * K, 4 * K, 4 * K + R, 4 * K + 2 * R)]
         base = None if more is None else more.ctypes.data
         tail = (None, None, None) if base is None else (base, base + 8 * K * K, base + 8 * (K * K + K))
-        record = native.RatesAt(native.address(A), native.address(low_A), native.address(c), T, J, wall_loss, *part, *tail)
+        record = native.RatesAt(*map(native.address, (A, low_A, c)), T, J, wall_loss, *part, *tail)
         if not native.library().reactor_kernel_rates(native.address(own.ints), native.address(own.reals), record):
             native.memory()
         return own, out, more

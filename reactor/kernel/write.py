@@ -16,8 +16,9 @@ def write(parts, order, eliminate):
     plan = eliminate(pattern, K + BORDER)
     back = count - parts.first_back
     net = parts.net[:, order]
+    reversible = net[parts.first_back:]
     sums = (
-        _sum((j, s, net[parts.first_back + j, s]) for j in range(back) for s in np.flatnonzero(net[parts.first_back + j])),
+        _sum((j, s, reversible[j, s]) for j in range(back) for s in np.flatnonzero(reversible[j])),
         _sum((s, r, net[r, s]) for r in range(count) for s in np.flatnonzero(net[r])),
         _sum(jacobian),
     )
@@ -29,7 +30,7 @@ def write(parts, order, eliminate):
             np.concatenate(([0], np.cumsum([len(s) for s in specials]))), [s for one in specials for s, _ in one],
             parts.colliders, parts.falloffs, *_starts(parts)]
     ints += [part for one in sums for part in one[0]]
-    others = [([*list(item.others), K, K])[:2] for item in parts.items]
+    others = [[*item.others, K, K][:2] for item in parts.items]
     ints += [[item.k for item in parts.items], [new[a] for a, _ in others], [new[b] for _, b in others]]
     ints += [[plan.place(i, k) for i, k in entries], *_border(plan, K)]
     ints += [plan.diagonal, plan.row, plan.column, plan.lower_at, plan.lower_row, plan.update_first, plan.update_to]
@@ -72,7 +73,7 @@ def _jacobian(parts, new):
 
 def _sum(terms):
     """Return the lists of a sum: added, subtracted, added with a factor; equal targets far apart."""
-    seen: dict[int, int] = {}
+    seen: dict = {}
     spread = []
     for to, source, by in terms:
         seen[to] = seen.get(to, 0) + 1
@@ -86,7 +87,7 @@ def _sum(terms):
 
 def _slots(taken, new, K):
     """Return three lists of species numbers, K where there is none."""
-    return [[new[([*one, K, K, K])[slot]] for one in taken] for slot in range(3)]
+    return [[new[[*one, K, K, K][slot]] for one in taken] for slot in range(3)]
 
 
 def _starts(parts):

@@ -16,14 +16,14 @@ enum { S_LINES, S_DEGREE, S_ENTERING, S_ENERGY, S_SIGMA, S_ABSORBED, S_TRANSMITT
 enum { STATUS_DONE, STATUS_STEPS, STATUS_SECONDS, STATUS_STUCK, STATUS_NEGATIVE, STATUS_WRONG, STATUS_MIXING,
        STATUS_MEMORY, STATUS_PRESSURE };
 
-#define FACE_VERSION 3   /* changes with every change of this file or of plan.h */
+#define FACE_VERSION 4   /* changes with every change of this file or of plan.h */
 #define RESULT_REALS 7   /* z, T, P where it stopped; hottest T, its z; z of exhaustion or -1; last step */
 #define RESULT_COUNTS 4  /* status, steps, evaluations, stations kept */
 #define ROW_MORE 14      /* a station: z, flow, n..., T, Tc, P, totals */
 
 typedef struct {
     int64_t count, tank, lines, degree, stations; /* stations: 0 the end only; 1 every step; more: some between */
-    const double *cases, *sections, *pool;
+    const double *cases, *sections, *pool, *const *tables; /* curves: start, step, points, then y and step y' in turn */
     const int64_t *links, *section_links;
     double *results;
     int64_t *counts;

@@ -10,23 +10,24 @@ BUILDS(plain1)
 BUILDS(plain2)
 BUILDS(wide1)
 BUILDS(wide4)
+BUILDS(wide8)
 
 #if defined(__x86_64__) || defined(_M_X64)
 #include <cpuid.h>
 #define HAS_WIDE 1
 
-/* AVX2 in the processor, and its registers saved by the system. */
-static int wide_runs(void)
+/* How many lanes the processor has registers for, and the system saves: 8 with AVX-512, 4 with AVX2, else 2. */
+static int widest(void)
 {
     unsigned a, b, c, d, low, high;
-    if (!__get_cpuid(1, &a, &b, &c, &d) || !(c & (1u << 27)) || !(c & (1u << 28))) return 0;
+    if (!__get_cpuid(1, &a, &b, &c, &d) || !(c & (1u << 27)) || !(c & (1u << 28))) return 2;
     __asm__ volatile("xgetbv" : "=a"(low), "=d"(high) : "c"(0));
-    if ((low & 6) != 6 || !__get_cpuid_count(7, 0, &a, &b, &c, &d)) return 0;
-    return (b & (1u << 5)) != 0;
+    if ((low & 6) != 6 || !__get_cpuid_count(7, 0, &a, &b, &c, &d) || !(b & (1u << 5))) return 2;
+    return (low & 0xe6) == 0xe6 && (b & (1u << 16)) && (b & (1u << 17)) && (b & (1u << 31)) ? 8 : 4;
 }
 #else
 #define HAS_WIDE 0
-static int wide_runs(void) { return 0; }
+static int widest(void) { return 2; }
 #endif
 
 #ifdef _WIN32
@@ -36,15 +37,17 @@ static int wide_runs(void) { return 0; }
 #endif
 
 FACE int reactor_kernel_version(void) { return FACE_VERSION; }
-FACE int reactor_kernel_lanes(void) { return wide_runs() ? 4 : 2; }
+FACE int reactor_kernel_lanes(void) { return widest(); }
 FACE void reactor_kernel_release(double *rows) { free(rows); }
 
-/* lanes: 1, 2 or 4; 4 only where reactor_kernel_lanes() says so. */
+/* lanes: 1, 2, 4 or 8; more than the processor has are not taken. */
 FACE int reactor_kernel_march(const int32_t *ints, const double *reals, Batch *batch, int lanes)
 {
 #if HAS_WIDE
-    if (wide_runs() && lanes == 4) return march_wide4(ints, reals, batch);
-    if (wide_runs() && lanes == 1) return march_wide1(ints, reals, batch);
+    int most = widest();
+    if (most >= 8 && lanes == 8) return march_wide8(ints, reals, batch);
+    if (most >= 4 && lanes >= 4) return march_wide4(ints, reals, batch);
+    if (most >= 4 && lanes == 1) return march_wide1(ints, reals, batch);
 #endif
     return lanes == 1 ? march_plain1(ints, reals, batch) : march_plain2(ints, reals, batch);
 }
@@ -52,7 +55,7 @@ FACE int reactor_kernel_march(const int32_t *ints, const double *reals, Batch *b
 FACE int reactor_kernel_rates(const int32_t *ints, const double *reals, Rates *rates)
 {
 #if HAS_WIDE
-    if (wide_runs()) return rates_wide1(ints, reals, rates);
+    if (widest() >= 4) return rates_wide1(ints, reals, rates);
 #endif
     return rates_plain1(ints, reals, rates);
 }
@@ -60,7 +63,7 @@ FACE int reactor_kernel_rates(const int32_t *ints, const double *reals, Rates *r
 FACE int reactor_kernel_point(const int32_t *ints, const double *reals, Batch *batch, Point *at)
 {
 #if HAS_WIDE
-    if (wide_runs()) return point_wide1(ints, reals, batch, at);
+    if (widest() >= 4) return point_wide1(ints, reals, batch, at);
 #endif
     return point_plain1(ints, reals, batch, at);
 }

@@ -2,7 +2,7 @@
 
    LANES cases are solved together, one in each lane of a vector; WIDE is the width in which long rows of numbers
    are worked through. All files are compiled with -ffp-contract=off: a machine with fused multiply-add, two lanes
-   or four, GCC or Clang, one case or many then print the same digits. */
+   or eight, GCC or Clang, one case or many then print the same digits. */
 #ifndef REACTOR_LANES_H
 #define REACTOR_LANES_H
 

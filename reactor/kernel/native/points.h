@@ -127,7 +127,7 @@ static int rest(March *m, double T, double step, int64_t steps)
     const Plan *p = m->p;
     Work *w = m->w;
     int K = p->species, fresh = 1;
-    double biggest = 0.0, last = 1e300;
+    double biggest = 0.0, last = 1e300, least = 1e-6 * w->y[K]; /* a gas of real atoms cannot vanish */
     w->y[K + 3] = T;
     for (int64_t turn = 0; turn < steps; turn++) {
         if (fresh) evaluate(p, m->cs, w->y, w->base_f, NULL, w, m->at, 1), differentiate(p, m->at, w);
@@ -156,6 +156,7 @@ static int rest(March *m, double T, double step, int64_t steps)
             w->y[s] = new > 0.0 ? new : 0.0, total += w->y[s];
         }
         w->y[K] = total;
+        if (!(total > least)) return 0;
         if (step > 1e6 && (biggest < 1e-9 || (biggest > 0.5 * last && biggest < 1e-4))) return 1;
         last = biggest;
         step = step * FASTER < 1e12 ? step * FASTER : 1e12;
@@ -176,6 +177,7 @@ static int64_t held(March *m, const Point *at, int64_t steps)
             if (!near || !rest(m, T, COLD, steps)) return i;
         }
         evaluate(m->p, m->cs, m->w->y, m->w->base_f, NULL, m->w, m->at, 0);
+        if (!(m->w->base_f[K + 3] - m->w->base_f[K + 3] == 0.0)) return i;
         for (int s = 0; s < M; s++)
             at->y[i * M + s] = m->w->y[s < K ? s : s + 1], at->f[i * M + s] = m->w->base_f[s < K ? s : s + 1];
     }
