@@ -55,7 +55,8 @@ class Tracer:
             stop = p + np.where(np.isfinite(step), step, 0.0)[:, None] * d
             level = stop[:, 2]
             gone = ~np.isfinite(step)
-            outside = ~in_gas & np.isfinite(step) & ((level < 0) | (level > self.length)) & (bounce > 0 or self.gas == "tubes")
+            beyond = (level < 0) | (level > self.length)
+            outside = ~in_gas & np.isfinite(step) & beyond & (bounce > 0 or self.gas == "tubes")
             fate[alive[outside & entered[alive]]] = ENDS  # z only goes one way: it does not come back
             gone |= outside
             kept = rng.random(len(alive)) < self.reflectance

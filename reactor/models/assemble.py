@@ -91,8 +91,9 @@ def beams(light, fixed, even=None):
     energy = light.photon_energy if lamps else np.array([PHOTON_365])
     mean = light.entering / (light.edges[-1] - light.edges[0])
     return [
-        Beam(np.asarray(entering if light.along is None else mean), energy, light.sigma, SIGMA_MIDDLE, SIGMA_HALF, light.path, light.area,
-             absorbed, transmitted, fixed if np.any(entering) or not lamps else None, ratio, light.along)
+        Beam(np.asarray(entering if light.along is None else mean), energy, light.sigma, SIGMA_MIDDLE, SIGMA_HALF,
+             light.path, light.area, absorbed, transmitted, fixed if np.any(entering) or not lamps else None, ratio,
+             light.along)
         for entering, absorbed, transmitted, ratio in zip(light.into_gas, light.absorbed, light.transmitted,
                                                           even or [None] * len(light.absorbed), strict=True)
     ]

@@ -8,6 +8,7 @@ all radicals.
 """
 
 from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 
@@ -90,7 +91,7 @@ def curves(plant, profile):
 def spaced(depth, z, edges):
     """Return the numbers of few stations of each section, evenly spaced in ln of the optical thickness."""
     found = set()
-    for start, stop in zip(edges, edges[1:], strict=False):
+    for start, stop in pairwise(edges):
         here = np.flatnonzero((z >= start) & (z <= stop))
         if len(here):
             rank = here[np.argsort(depth[here])]

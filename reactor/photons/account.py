@@ -1,5 +1,6 @@
 """The photon ledger: where the mains watts and the photons of a reactor go, and how well each line closes."""
 
+from itertools import pairwise
 from typing import NamedTuple
 
 import numpy as np
@@ -108,7 +109,7 @@ def by_band(light, absorbed, outer_wall, ends, parallel=1):
         "absorbed": absorbed, "outer wall": outer_wall, "ends": ends,
     }  # fmt: skip
     rows = []
-    for low, high in zip(BANDS, BANDS[1:], strict=False):
+    for low, high in pairwise(BANDS):
         here = (nm >= low * (1 - 1e-9)) & ((nm < high) | (high == BANDS[-1]))
         if here.any() and s.at_window[here].sum() > 0:
             rows.append({"band": (low, high)} | {n: float(f[here].sum()) * parallel for n, f in flows.items()})

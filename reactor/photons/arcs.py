@@ -127,7 +127,8 @@ def along(rays, slope, weight, arc, borders, gap):
 
 def _starts(entry, centre, tangent, weight, arc, borders):
     """Return places of entry, photons and section for (ray, slope, section, node)."""
-    start, stop, length = *arc, borders[-1]
+    start, stop = arc
+    length = borders[-1]
     shift = entry[:, None] * tangent  # from the lamp to the entry
     low, high = np.maximum(start + shift, 0.0), np.minimum(stop + shift, length)
     lag = (centre - entry)[:, None] * tangent  # from the entry to where the light is counted

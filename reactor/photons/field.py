@@ -19,8 +19,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from reactor.photons.bickley import bickley, bickley_deficit
-from reactor.photons.laws import ISOTROPIC, LAMBERTIAN, RADIAL, SINE, gauss
-
+from reactor.photons.laws import ISOTROPIC, RADIAL, SINE, gauss
 
 
 @dataclass(frozen=True)

@@ -5,6 +5,7 @@ A real ray at the elevation phi runs 1/cos(phi) times the length of its picture 
 is described by its picture alone; slopes, ends, windows and absorption are the same for all of them.
 """
 
+from itertools import pairwise
 from typing import NamedTuple
 
 import numpy as np
@@ -97,7 +98,9 @@ def annulus(inside, outside, law, lamp_radius=0.0, reflectance=0.0, returning=0.
     ray = np.repeat(np.arange(len(o)), len(found))
     flat = stacked.transpose(1, 2, 0).reshape(5, -1)
     volume = np.diff(edges**2) / (outside**2 - inside**2)
-    return Rays(share, np.sqrt(1 - (o / inside) ** 2), ray, *flat[:4], flat[4].astype(int), volume)
+    weight_of, before, after, reach, cell = flat
+    slant = np.sqrt(1 - (o / inside) ** 2)
+    return Rays(share, slant, ray, weight_of, before, after, reach, cell.astype(int), volume)
 
 
 def slab(gap, law, sides=1, reflectance=0.0, layers=0):
@@ -127,7 +130,7 @@ def slab(gap, law, sides=1, reflectance=0.0, layers=0):
     one, cell, level = [], [], []
     for number, kept in enumerate(passes):
         places = edges if number == 0 else 2 - edges[::-1]
-        one += list(zip(places, places[1:], strict=False))
+        one += list(pairwise(places))
         cell += list(cells if number == 0 else cells[::-1])
         level += [kept] * len(cells)
     stretch = gap / np.cos(tilt)[:, None] * np.array(one).T[:, None, :]  # (2, rays, stretches)
@@ -170,11 +173,12 @@ def grouped(rays, classes=16):
             at = start[group] + step
             weight = part @ rays.weight[at]
             mean = part * rays.weight[at] / weight if weight > 0 else part
-            before = mean @ rays.before[at]
-            row = (number, weight, before, before + mean @ (rays.after[at] - rays.before[at]), mean @ rays.reach[at])
+            start_at = mean @ rays.before[at]
+            chord_at = mean @ (rays.after[at] - rays.before[at])
+            row = (number, weight, start_at, start_at + chord_at, mean @ rays.reach[at])
             for piece, value in zip(pieces, row, strict=True):
                 piece.append(value)
     slant = np.array([rays.slant[group] @ rays.share[group] for group in kinds]) / share
-    ray, *rest = (np.array(piece) for piece in pieces)
-    return Rays(share, slant, ray.astype(int), *rest, np.zeros(len(ray), int), np.ones(1))
+    ray, level, before, after, reach = (np.array(piece) for piece in pieces)
+    return Rays(share, slant, ray.astype(int), level, before, after, reach, np.zeros(len(ray), int), np.ones(1))
 

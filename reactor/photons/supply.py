@@ -1,6 +1,7 @@
 """What the lamps of one tube (or tank) supply to its gas, by line and by section, ready for the kernel."""
 
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -150,12 +151,13 @@ def light(lamps, sleeve, shape, length):
     along = None
     if shape.name == "immersed lamps" or (law != RADIAL and _alike(photons)):
         borders, each_along = _ends_of(sources, shape, length), [_whole(a) for a in each_along]
-        along = None if shape.name == "immersed lamps" or not any(flow) else _profile(
-            rays, phi, slant, sources, flow, arcs.places(reach, length))  # fmt: skip
+        if shape.name != "immersed lamps" and any(flow):
+            along = _profile(rays, phi, slant, sources, flow, arcs.places(reach, length))
     raw = _per_metre([_within(a, along, borders) for a in each_along], photons, borders, followed.sum())
     lines = merge.merged(line[followed], raw.sum(axis=0))
     absorbed, transmitted, ends = _curves(each_along, flow, len(borders) - 1)
-    spectrum = Spectrum(line[followed], chlorine.sigma_fit(line[followed]), raw, bright[followed] * rays.capture, passed[followed])
+    at_window = bright[followed] * rays.capture
+    spectrum = Spectrum(line[followed], chlorine.sigma_fit(line[followed]), raw, at_window, passed[followed])
     entering = sum((p * a.entering.sum() for p, a in zip(photons, each_along, strict=True)), 0 * line[followed])
     flows = (radiant, passed * rays.capture, entering, followed, bands)
     heat = _heat(sources, shape, borders, np.where(followed, (1 - passed) * rays.capture, 0.0))
@@ -171,9 +173,12 @@ def light(lamps, sleeve, shape, length):
 def _refined(one, every, few, slopes_of, gap):
     """Return the light of an arc traced with few rays, with the ways of every ray of long lamps put in for theirs."""
     whole = spread.tilted(*slopes_of)
-    exact, rough = (spread.spread(rays.after / gap, (rays.weight - rays.next_weight) * (rays.share / rays.capture)[rays.ray],
-                                  np.zeros(len(rays.ray), int), 1) @ whole for rays in (every, few))  # fmt: skip
-    return one._replace(wall=one.wall + one.entering[:, None] * (exact - rough))
+
+    def ways(rays):
+        dies = (rays.weight - rays.next_weight) * (rays.share / rays.capture)[rays.ray]
+        return spread.spread(rays.after / gap, dies, np.zeros(len(rays.ray), int), 1) @ whole
+
+    return one._replace(wall=one.wall + one.entering[:, None] * (ways(every) - ways(few)))
 
 
 def _alike(photons):
@@ -203,7 +208,7 @@ def _within(one, along, borders):
     """Return the share of an arc's light in each section."""
     if along is None or len(borders) == 2:
         return one.entering
-    fine = [np.linspace(a, b, 201) for a, b in zip(borders, borders[1:], strict=False)]
+    fine = [np.linspace(a, b, 201) for a, b in pairwise(borders)]
     part = np.array([np.trapezoid(along(z)[0], z) for z in fine])
     return one.entering.sum() * part / part.sum()
 
@@ -241,7 +246,7 @@ def _heat(sources, shape, borders, lost):
         return total  # the lamp stands outside; what its light leaves in the window goes to the coolant
     for source in sources:
         watts = source.lamp.heat * source.at_lamp + source.radiant @ lost
-        held = [source.share_within(*pair) for pair in zip(borders, borders[1:], strict=False)]
+        held = [source.share_within(*pair) for pair in pairwise(borders)]
         total += watts * np.array(held) / np.diff(borders)
     return total
 

@@ -11,8 +11,8 @@ import numpy as np
 
 from reactor import library
 from reactor.errors import CaseError
-from reactor.photons.laws import LAWS, slopes
 from reactor.photons.lamps import nearest, numbers_from_csv, wavelength_faults
+from reactor.photons.laws import LAWS, slopes
 
 ACCEPTED = (
     "accepted: a CSV file with the columns `wavelength [nm]` (rising) and `transmission [%]` "

@@ -13,7 +13,8 @@ def light_ledger(light, profile, case):
     """Return the light account of all tubes as rows {name, part_of, power, photons}."""
     if not len(light.wavelength):
         return ()
-    found = photons.ledger(light, *per_line(light, profile, case.vessel.parallel), parallel=case.vessel.parallel)
+    absorbed, wall, ends = per_line(light, profile, case.vessel.parallel)
+    found = photons.ledger(light, absorbed, wall, ends, case.vessel.parallel)
     return tuple(
         {
             "name": r.name,

@@ -187,12 +187,12 @@ def bracket(profile, mixed, gas):
         return {}
     beside = conversion(mixed, gas)
     return {
-        "mixed_pool": {
+        "mixed_pool": [{
             "conversion_chlorine": beside["conversion_chlorine"],
             "chlorine_slip": beside["chlorine_slip"],
             "temperature_hottest": quantity(mixed.hottest[0], "K"),
             "photons_absorbed": quantity(mixed.total("photons"), "mol/s"),
-        }
+        }]
     }
 
 

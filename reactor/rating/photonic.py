@@ -49,7 +49,7 @@ def photonic(case):
     results = figures.headline(case, equipment, profile, feed)
     inlet = profile.concentrations[0], float(profile.temperature[0])
     c = float(inlet[0][gas.index["Cl2"]])
-    lines = account.per_line(light, profile, case.vessel.parallel)
+    absorbed, wall, ends = account.per_line(light, profile, case.vessel.parallel)
     return {
         "title": case.title,
         "geometry": geometry(light),
@@ -59,7 +59,7 @@ def photonic(case):
         "laws": bracket(case, light, c, inlet[1]),
         "lamps": other_lamps(case, light, c, inlet[1]),
         "ledger": account.light_ledger(light, profile, case),
-        "bands": by_band(light, *lines, parallel=case.vessel.parallel),
+        "bands": by_band(light, absorbed, wall, ends, case.vessel.parallel),
         "merit": merit(case, profile, results, gas),
         "along": along(light, profile),
         "pools": pool_bracket(profile, mixed, gas),

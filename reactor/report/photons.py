@@ -1,7 +1,7 @@
 """The photon report and the lamp data sheet as text; they work from the plain record of `rating.photonic`."""
 
-from reactor.report.numbers import NOTHING, figure
 from reactor.report.layout import line, paragraph, section
+from reactor.report.numbers import NOTHING, figure
 
 DAY = 86400.0
 DEFINITIONS = (

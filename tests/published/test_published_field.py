@@ -200,7 +200,7 @@ def test_a_bright_outer_wall_adds_its_passes(tau, rho, black, clear):
 
 
 @pytest.mark.parametrize(("tau", "value"), [(0.1, 0.167417), (1.0, 0.780616), (3.0, 0.982139)])
-def test_a_slab_under_a_lambertian_panel_absorbs_one_less_twice_E3(tau, value):
+def test_a_slab_under_a_lambertian_panel_absorbs_what_the_exponential_integral_says(tau, value):
     # Source: 1 - 2 E3(tau), beside a Monte Carlo of 1e6 rays (computed). Kind: limit.
     assert share(rays.slab(0.02, LAMBERTIAN), SINE, tau, 0.02) == approx(value, rel=1e-4)
 

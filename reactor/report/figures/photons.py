@@ -29,7 +29,8 @@ def draw(record, path):
     try:
         from matplotlib.figure import Figure
     except ImportError:
-        raise CaseError("--figure needs matplotlib; install it with: pip install 'photochlorination-reactor[figures]'") from None
+        how = "pip install 'photochlorination-reactor[figures]'"
+        raise CaseError(f"--figure needs matplotlib; install it with: {how}") from None
     picture = Figure(figsize=(10, 7.4), layout="constrained")
     axes = picture.subplots(2, 2)
     for panel, ax in zip((spectrum, shares, along, bands), axes.flat, strict=True):
@@ -50,7 +51,8 @@ def spectrum(record, ax):
     ax.set(xlabel="wavelength [nm]", ylabel="photons at the window [umol/s]", title="Lamp over gas", xlim=(260, 460))
     ax.set_ylim(bottom=0)
     twin = ax.twinx()
-    twin.fill_between([w * 1e9 for w in o["wavelength"]], [s * 1e24 for s in o["cross_section"]], color="#9bbf85", alpha=0.35)
+    reach = [w * 1e9 for w in o["wavelength"]]
+    twin.fill_between(reach, [s * 1e24 for s in o["cross_section"]], color="#9bbf85", alpha=0.35)
     twin.set_ylabel("cross-section of Cl2 [1e-24 m2]", color="#4d7a35")
     twin.set_ylim(bottom=0)
     twin.spines["top"].set_visible(False)
@@ -62,6 +64,8 @@ def shares(record, ax):
     nm = [w * 1e9 for w in o["wavelength"]]
     greys = iter(("#c7c7c7", "#a5a5a5", "#828282", "#606060", "#3d3d3d"))
     for gap, share in o["absorbed"].items():
+        if abs(float(gap) / own - 1) < 0.15 and abs(float(gap) - own) > 1e-6:
+            continue  # too near to the gap of the case
         mine = abs(float(gap) - own) < 1e-6
         ax.plot(nm, [100 * f for f in share], color="#c2410c" if mine else next(greys), lw=2.2 if mine else 1.3)
         place = next((i for i, w in enumerate(nm) if w >= (395 if not mine else 412)), -1)
