@@ -1,6 +1,7 @@
 """Turn a case and its rooms (gas, light, wall) into the plain records of the kernel."""
 
 import itertools
+from dataclasses import replace
 from typing import NamedTuple
 
 import numpy as np
@@ -88,6 +89,8 @@ def beams(light, fixed, even=None):
     `even`: for local radical pools one curve a section, of the rate that counts over the mean rate.
     """
     lamps = bool(np.any(light.into_gas))
+    if fixed is not None and lamps:  # then the light itself counts for nothing: no tails beyond the lit stretches
+        light = replace(light, into_gas=light.into_gas * light.lit[:, None], along=None)
     energy = light.photon_energy if lamps else np.array([PHOTON_365])
     mean = light.entering / (light.edges[-1] - light.edges[0])
     return [

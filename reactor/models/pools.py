@@ -53,7 +53,7 @@ def cut(light, places):
     number = np.clip(np.searchsorted(light.edges, edges[:-1], side="right") - 1, 0, len(light.edges) - 2)
     curves_of = {name: tuple(getattr(light, name)[i] for i in number) for name in ("absorbed", "transmitted", "ends")}
     spectrum = light.spectrum._replace(into_gas=light.spectrum.into_gas[number])
-    return replace(light, edges=edges, into_gas=light.into_gas[number], sleeve_heat=light.sleeve_heat[number],
+    return replace(light, edges=edges, into_gas=light.into_gas[number], lit=light.lit[number], sleeve_heat=light.sleeve_heat[number],
                    spectrum=spectrum, **curves_of)
 
 

@@ -19,7 +19,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from reactor.photons.bickley import bickley, bickley_deficit
-from reactor.photons.laws import ISOTROPIC, RADIAL, SINE, gauss
+from reactor.photons.laws import ISOTROPIC, LAMBERTIAN, RADIAL, SINE, gauss  # noqa: F401 - named by those who call
 
 
 @dataclass(frozen=True)

@@ -48,7 +48,7 @@ class Light:
     (s + 1,) positions [m]. into_gas: (s, n) photons entering the gas per metre of tube [mol/m/s], mean of the section.
     along: curve of position, the entering light over its mean along the whole tube, which then replaces the mean of
     the sections; None: the light is even within each section. sleeve_heat: (s,)
-    lamp heat and light caught in sleeve and deposit, per metre [W/m]. law, lamp_radius: of the lamps. capture: share
+    lamp heat and light caught in sleeve and deposit, per metre [W/m]. lit: (s,) whether an arc is beside it. law, lamp_radius: of the lamps. capture: share
     of what they send that reaches the window. accounts: the ledger of one tube, from mains to into-gas.
     """
 
@@ -64,6 +64,7 @@ class Light:
     into_gas: np.ndarray
     along: Curve | None
     sleeve_heat: np.ndarray
+    lit: np.ndarray
     shape: Any
     law: str
     lamp_radius: float
@@ -163,7 +164,7 @@ def light(lamps, sleeve, shape, length):
     heat = _heat(sources, shape, borders, np.where(followed, (1 - passed) * rays.capture, 0.0))
     return Light(
         lines.energy, lines.quantum_yield, lines.sigma, shape.gap, shape.area, absorbed, transmitted, ends, borders,
-        raw @ lines.mix.T, along, heat, shape, law, radius, rays.capture, slant, spectrum,
+        raw @ lines.mix.T, along, heat, _lit(sources, borders), shape, law, radius, rays.capture, slant, spectrum,
         accounts=_accounts(sources, line, rays.capture, flows),
         cited=remarks.cited(known, sleeve, law, shape),
         notes=remarks.notes(lamps, known, sleeve, (law, radius, shape), (line, radiant, bands), length),
@@ -237,6 +238,12 @@ def _curves(each_along, photons, sections):
     all_, out = (wall + ends) / scale, ends / scale
     absorbed, passed = spread.curves(all_, all_)
     return tuple(absorbed), tuple(passed), tuple(spread.survival(out))
+
+
+def _lit(sources, borders):
+    """Return which sections lie beside an arc."""
+    middle = (borders[1:] + borders[:-1]) / 2
+    return np.array([any(s.start < z < s.stop for s in sources) for z in middle], bool)
 
 
 def _heat(sources, shape, borders, lost):

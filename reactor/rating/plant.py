@@ -45,7 +45,7 @@ def lamps(case):
 
 def shape(case):
     """Return the geometry of one tube or tank as the photon room wants it."""
-    vessel, sleeve = case.vessel, case.sleeve
+    vessel, sleeve = case.vessel, sleeve_of(case)
     mirror = vessel.wall_reflectance
     if vessel.kind == "stirred tank":
         return photons.Immersed(sleeve.outside / 2, vessel.shell_inside / 2, sleeves(case), vessel.lamp_circle,

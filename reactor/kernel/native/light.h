@@ -21,6 +21,7 @@ typedef struct {
     Curve even[LANES]; /* J that counts for the radicals over J, by ln of the mean optical thickness */
     Curve along[LANES]; /* what multiplies `entering`, by position [m] */
     lane scale;        /* along[] at the position looked at */
+    lane whole;        /* photons of the section where along[] is 1 [mol/s] */
     int moves;         /* whether any along[] is more than a constant */
 } Beam;
 

@@ -121,6 +121,9 @@ static void load_beam(March *m, int l, const double *section, const int64_t *lin
         beam->lines = its && its[S_LINES] > beam->lines ? (int)its[S_LINES] : beam->lines;
         beam->moves |= its && its[S_MOVES];
     }
+    AT(beam->whole, l) = 0.0;
+    for (int j = 0; j < lines; j++)
+        AT(beam->whole, l) += SEEN(beam->entering[j], l) * (section[S_STOP] - section[S_START]);
     lane here = all(section[S_START]), scale, none;
     read_curves(beam->along, here, &scale, &none);
     AT(beam->scale, l) = SEEN(scale, l) > 0.0 ? SEEN(scale, l) : 0.0;
