@@ -51,10 +51,10 @@ def cut(light, places):
     """Return the light with further borders of its sections."""
     edges = np.unique(np.concatenate((light.edges, [z for z in places if 0.0 < z < light.edges[-1]])))
     number = np.clip(np.searchsorted(light.edges, edges[:-1], side="right") - 1, 0, len(light.edges) - 2)
-    curves_of = {name: tuple(getattr(light, name)[i] for i in number) for name in ("absorbed", "transmitted", "ends")}
+    changed = {name: tuple(getattr(light, name)[i] for i in number) for name in ("absorbed", "transmitted", "ends")}
+    changed |= {name: getattr(light, name)[number] for name in ("into_gas", "lit", "sleeve_heat")}
     spectrum = light.spectrum._replace(into_gas=light.spectrum.into_gas[number])
-    return replace(light, edges=edges, into_gas=light.into_gas[number], lit=light.lit[number], sleeve_heat=light.sleeve_heat[number],
-                   spectrum=spectrum, **curves_of)
+    return replace(light, edges=edges, spectrum=spectrum, **changed)
 
 
 def sigma_at(light, T):

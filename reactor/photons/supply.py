@@ -48,8 +48,9 @@ class Light:
     (s + 1,) positions [m]. into_gas: (s, n) photons entering the gas per metre of tube [mol/m/s], mean of the section.
     along: curve of position, the entering light over its mean along the whole tube, which then replaces the mean of
     the sections; None: the light is even within each section. sleeve_heat: (s,)
-    lamp heat and light caught in sleeve and deposit, per metre [W/m]. lit: (s,) whether an arc is beside it. law, lamp_radius: of the lamps. capture: share
-    of what they send that reaches the window. accounts: the ledger of one tube, from mains to into-gas.
+    lamp heat and light caught in sleeve and deposit, per metre [W/m]. lit: (s,) whether an arc is beside it.
+    law, lamp_radius: of the lamps. capture: share of what they send that reaches the window. accounts: the
+    ledger of one tube, from mains to into-gas.
     """
 
     photon_energy: np.ndarray

@@ -17,7 +17,7 @@ from reactor.rating.plant import lamps, located, plant, shape, sleeve_of
 
 AVOGADRO = 6.02214076e23
 GAPS = (0.005, 0.010, 0.025, 0.050, 0.100)  # m
-SCAN = np.arange(290e-9, 451e-9, 2.5e-9)  # m, wavelengths of the overlay
+SCAN = np.arange(260e-9, 461e-9, 2.5e-9)  # m, wavelengths of the overlay
 DAY = 86400.0
 
 

@@ -32,10 +32,14 @@ def draw(record, path):
         how = "pip install 'photochlorination-reactor[figures]'"
         raise CaseError(f"--figure needs matplotlib; install it with: {how}") from None
     picture = Figure(figsize=(10, 7.4), layout="constrained")
-    axes = picture.subplots(2, 2)
-    for panel, ax in zip((spectrum, shares, along, bands), axes.flat, strict=True):
+    if record["along"]["z"]:
+        panels, places = (spectrum, shares, along, bands), "ab;cd"
+    else:
+        panels, places = (spectrum, shares, bands), "ab;cc"
+    axes = picture.subplot_mosaic(places)
+    for panel, ax in zip(panels, axes.values(), strict=True):
         panel(record, ax)
-        ax.spines[["top", "right"]].set_visible(ax.get_label() == "twin")
+        ax.spines[["top", "right"]].set_visible(False)
     picture.suptitle(f"{record['title']}: light ({record['geometry']['name']}, {record['geometry']['law']})")
     try:
         picture.savefig(path, dpi=150)
@@ -67,24 +71,17 @@ def shares(record, ax):
         if abs(float(gap) / own - 1) < 0.15 and abs(float(gap) - own) > 1e-6:
             continue  # too near to the gap of the case
         mine = abs(float(gap) - own) < 1e-6
-        ax.plot(nm, [100 * f for f in share], color="#c2410c" if mine else next(greys), lw=2.2 if mine else 1.3)
-        place = next((i for i, w in enumerate(nm) if w >= (395 if not mine else 412)), -1)
-        ax.annotate(f"{float(gap) * 1e3:.3g} mm", (nm[place], 100 * share[place]), fontsize=8, va="bottom",
-                    color="#c2410c" if mine else "#444444")  # fmt: skip
-    ax.axvline(o["best"] * 1e9, color="#c2410c", ls=":", lw=1)
-    ax.annotate(f"best here {o['best'] * 1e9:.0f} nm", (o["best"] * 1e9, 4), fontsize=8, color="#c2410c", ha="center",
-                backgroundcolor="white")  # fmt: skip
-    ax.set(xlabel="wavelength [nm]", ylabel="absorbed, inlet gas [%]", ylim=(0, 102), xlim=(290, 450),
+        ax.plot(nm, [100 * f for f in share], color="#c2410c" if mine else next(greys),
+                lw=2.2 if mine else 1.3, label=f"{float(gap) * 1e3:.3g} mm{' (this case)' if mine else ''}")
+    ax.axvline(o["best"] * 1e9, color="#c2410c", ls=":", lw=1, label=f"best here: {o['best'] * 1e9:.0f} nm")
+    ax.legend(frameon=False, fontsize=8)
+    ax.set(xlabel="wavelength [nm]", ylabel="absorbed, inlet gas [%]", ylim=(0, 102), xlim=(260, 460),
            title=f"Absorbed by gap (long lamp, {o['law']})")  # fmt: skip
 
 
 def along(record, ax):
     """Draw where light enters the tube and what it does to chlorine."""
     a = record["along"]
-    if not a["z"]:
-        ax.text(0.5, 0.5, "stirred vessel: one station", ha="center", va="center", transform=ax.transAxes)
-        ax.set_axis_off()
-        return
     ax.plot(a["z"], [s * 1e6 for s in a["entering"]], color="#3a5f9a")
     ax.set(xlabel="position from the inlet [m]", title="Along one tube", xlim=(0, a["z"][-1]))
     ax.set_ylabel("light entering the gas [umol/s/m]", color="#3a5f9a")
