@@ -92,7 +92,7 @@ class Slate:
         RangeError
             When the products of this network cannot take up so much.
         """
-        make, most = getattr(self, kind), self._most()
+        make, most = getattr(self, kind), self.most()
         if not 0.0 < chlorine < most:
             raise RangeError(
                 f"a mole of this feed takes up between 0 and {most:.3g} mol of chlorine in products with up to "
@@ -114,7 +114,7 @@ class Slate:
         fed = self.start > 0
         return self._solve(getattr(self, kind), lambda x: 1.0 - x[fed].sum() - conversion)
 
-    def _most(self):
+    def most(self):
         """Return the uptake when nothing more can react, after an exposure without end."""
         slowest = np.min(-self.K.diagonal()[self.K.diagonal() < 0], initial=np.inf)
         return self.uptake(self.tank(1e9 / slowest))

@@ -39,6 +39,30 @@ def species(code):
     return piece and _read(piece)
 
 
+def text(key):
+    """Return the entry of a species as it stands in its file, else an empty text."""
+    return _clean(_pieces()[0].get(key, ""))
+
+
+def reaction_text(left, right):
+    """Return the entry of a reaction as it stands in its file, else an empty text."""
+    return _clean(_pieces()[1].get((tuple(sorted(left)), tuple(sorted(right))), ""))
+
+
+def light():
+    """Return the entries of the light and wall steps as they stand in the small mechanism."""
+    whole = (library.folder() / FILES[0]).read_text(encoding="utf-8")
+    return whole.partition("\nlight-and-wall:\n")[2]
+
+
+def _clean(piece):
+    """Return a piece without the remarks and empty lines that follow it."""
+    lines = piece.splitlines()
+    while lines and (not lines[-1].strip() or lines[-1].lstrip().startswith("#")):
+        lines.pop()
+    return "\n".join(lines) + "\n" if lines else ""
+
+
 def keys():
     """Return the keys of all species."""
     return tuple(_pieces()[0])
