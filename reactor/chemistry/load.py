@@ -131,6 +131,8 @@ def _kind(species):
 
     if species.name in _known():
         return _known()[species.name]
+    if species.input_data.get("kind") in ("molecule", "radical", "peroxy"):
+        return species.input_data["kind"]
     counts = {element: number for element, number in species.composition.items() if element != "E"}
     electrons = sum(Element(element).atomic_number * number for element, number in counts.items())
     return "radical" if round(electrons - species.charge) % 2 else "molecule"

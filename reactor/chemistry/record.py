@@ -63,8 +63,8 @@ class Mechanism:
     atoms : array (K, E)
         Atoms of each element in each species. [-]
     kinds : tuple of str (K)
-        molecule, radical or peroxy. A species that `data/species.csv` does not know is a radical when its
-        number of electrons is odd, else a molecule.
+        molecule, radical or peroxy. A species that `data/species.csv` does not know is what its own key `kind`
+        in the file says, else a radical when its number of electrons is odd, else a molecule.
     radical : bool array (K,)
         Where the kind is radical.
     tables : Tables

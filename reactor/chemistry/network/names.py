@@ -1,9 +1,10 @@
 """The names that chemists use for chloroalkanes, their radicals and chloroalkenes, and the keys of the program."""
 
+import re
 from functools import cache
 
 from reactor import library
-from reactor.chemistry.network.tree import alkanes, molecule, paths
+from reactor.chemistry.network.tree import alkanes, molecule, paths, radical, with_chlorine
 
 STEMS = ("", "meth", "eth", "prop", "but", "pent", "hex", "hept", "oct", "non", "dec", "undec", "dodec")
 SIMPLE = ("", "", "di", "tri", "tetra", "penta", "hexa", "hepta", "octa", "nona", "deca", "undeca", "dodeca")
@@ -158,3 +159,42 @@ def _spellings():
             found.setdefault(word.strip().lower(), code)
     found.pop("", None)
     return found
+
+
+@cache
+def find(words):
+    """
+    Return the code of a molecule by its key, its name or a trade name, else None.
+
+    Examples
+    --------
+    >>> find("isobutane"), find("1,2-C3H6Cl2") == find("propylene dichloride"), find("N2")
+    ('C(C)(C)C', True, None)
+    """
+    if code := alkane(words):
+        return code
+    spoken = words.strip().lower()
+    for row in (*library.table("species.csv").rows, *library.table("networks/names.csv").rows):
+        spellings = (row["key"], row["name"], *row["synonyms"].split(";"))
+        if row["kind"] == "molecule" and spoken in (word.strip().lower() for word in spellings):
+            if row["key"] in structures():
+                return structures()[row["key"]]
+            return _isomers(row["formula"]).get(row["key"])
+    return None
+
+
+@cache
+def _isomers(formula):
+    """Return {key: code} of all chloroalkanes with a formula."""
+    carbons, chlorine = (_count(formula, element) for element in ("C", "Cl"))
+    if set(re.findall(r"[A-Z][a-z]?", formula)) - {"C", "H", "Cl"} or not 1 <= carbons <= 6:
+        return {}
+    codes = set(alkanes(carbons))
+    for _ in range(chlorine):
+        codes = {with_chlorine(radical(code, at)) for code in codes for at, _ in molecule(code).sites()}
+    return {key(code): code for code in codes if molecule(code).formula == formula}
+
+
+def _count(formula, element):
+    found = re.search(rf"{element}(?![a-z])(\d*)", formula)
+    return int(found[1] or 1) if found else 0

@@ -10,11 +10,12 @@ from reactor.chemistry.network import enumerate as made
 from reactor.chemistry.network import names, rates, small
 from reactor.chemistry.network.rates import Rate
 from reactor.chemistry.network.thermo import nasa7, peroxy, thermo
-from reactor.chemistry.network.tree import molecule, with_chlorine, with_hydrogen, without_chlorine
+from reactor.chemistry.network.tree import alkanes, molecule, with_chlorine, with_hydrogen, without_chlorine
 from reactor.chemistry.network.volatility import lennard_jones, volatility
 
 ALWAYS = ("Cl", "Cl2", "HCl", "O2", "N2", "Ar", "CO2", "ClOO")
 PHOSGENE = ("ClO", "CCl3O", "CHCl2O", "CHClO", "COCl", "COCl2", "CO")  # comes with CHCl2 and CCl3
+LADDER = ("CC", "C(Cl)(Cl)(Cl)C(Cl)(Cl)Cl")  # the hazard side extends the enthalpies of chlorides by these two
 COLLIDER = 6.0  # efficiency in 2 Cl + M of a molecule that the small mechanism does not list; estimate
 PHASE = """\
   - name: {name}
@@ -104,7 +105,11 @@ class Reactions:
             *pruned.network.molecules, *joined, *(s.product for s in self.steps), *pruned.alkenes,
             *(s.radical for s in self.steps),
         )  # fmt: skip
-        self.species = tuple(dict.fromkeys(ordered))
+        sizes = {molecule(code).carbons for code in ordered}
+        bare = {molecule(code).carbons for code in ordered if set(molecule(code).atoms) == {"C", "H"} and code in joined}
+        bare |= {molecule(code).carbons for code in pruned.network.feeds}
+        missing = [alkanes(size)[-1] for size in sorted(sizes - bare)]
+        self.species = tuple(dict.fromkeys((*ordered, *missing, *map(_code, LADDER))))
         self._substitutions(pruned.network.radicals)
         self._alkenes(pruned.alkenes)
         self._ends(pruned)
@@ -174,6 +179,10 @@ class Reactions:
             else:
                 parts.append(_reaction(sides, rate, self.arrows[sides]))
         return parts
+
+
+def _code(structure):
+    return molecule(structure).code
 
 
 def _added(alkene):

@@ -1,0 +1,89 @@
+"""From a feed to a pruned mechanism file: the one call behind the command and a case."""
+
+from reactor.chemistry.network import cache, names, prune, write
+from reactor.chemistry.network.enumerate import network
+from reactor.chemistry.network.tree import molecule
+from reactor.errors import CaseError
+
+COLDEST, HOTTEST = 200.0, 700.0  # K; beyond, rules and mechanism say nothing
+
+
+def structures(feed):
+    """
+    Return amounts by canonical code of amounts by key or name; other gases are left out.
+
+    Parameters
+    ----------
+    feed : dict of float
+        Amounts; any scale. [-]
+
+    Raises
+    ------
+    CaseError
+        When nothing in the feed is an alkane or chloroalkane of up to six carbons.
+
+    Examples
+    --------
+    >>> structures({"propane": 0.9, "N2": 0.1})
+    {'C(C)C': 0.9}
+    """
+    found: dict[str, float] = {}
+    for word, amount in feed.items():
+        code = names.find(word)
+        if code is not None and amount > 0 and molecule(code).double is None:
+            found[code] = found.get(code, 0.0) + amount
+    if not found:
+        raise CaseError(
+            f"{', '.join(feed) or 'the feed'}: no alkane from C1 to C6 among these; write it like propane, n-butane, "
+            "isobutane, 2-methylpentane or C3H8"
+        )
+    return found
+
+
+def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings=True):
+    """
+    Return the path of the pruned mechanism of a feed; made once, then taken from the cache.
+
+    Parameters
+    ----------
+    feed : dict of float
+        Amounts by key or name; any scale. [-]
+    ratio : float
+        Alkane per chlorine. [-]
+    temperatures : pair of float
+        Coldest and hottest gas. [K]
+    chlorines : int
+        Largest number of chlorine atoms in a product. [-]
+    error : float
+        Organic chlorine that may be left out, of all. [-]
+    couplings : bool
+        Whether products of two radicals are wanted.
+
+    Returns
+    -------
+    pathlib.Path
+        To be named as chemistry.mechanism.
+    """
+    codes = structures(feed)
+    total = sum(codes.values())
+    shares = {code: round(amount / total, 6) for code, amount in sorted(codes.items())}
+    span = tuple(min(max(float(T), COLDEST), HOTTEST) for T in temperatures)
+    request = {"feed": shares, "ratio": float(ratio), "temperatures": span, "chlorines": chlorines, "error": error,
+               "couplings": couplings}  # fmt: skip
+
+    def make():
+        whole = network(tuple(shares), chlorines)
+        return write.text(prune.prune(whole, shares, ratio, span, error, couplings), title(shares, request))
+
+    return cache.kept(request, make)
+
+
+def title(shares, request):
+    """Return one line that says what a mechanism was made for."""
+    fed = ", ".join(f"{names.name(code)} {100 * share:.4g} %" for code, share in shares.items())
+    cold, hot = request["temperatures"]
+    pairs = "with" if request["couplings"] else "without"
+    return (
+        f"Chlorination of {fed}: up to {request['chlorines']} Cl, {request['ratio']:.4g}:1, {cold:.0f} to {hot:.0f} K, "
+        f"{pairs} couplings, pruned at {100 * request['error']:.3g} % of the organic chlorine"
+    )
