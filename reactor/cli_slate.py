@@ -110,7 +110,7 @@ def _mechanism(network, asked, hottest, chlorines, error, couplings, target):
         raise CaseError("--write needs the ratio of alkane to chlorine: add --ratio 8")
     span = (asked["T"], max(hottest or asked["T"] + SPAN, asked["T"]))
     made = network.mechanism_file(asked["feed"], asked["ratio"], span, chlorines, error, couplings)
-    text = made.read_text(encoding="utf-8")
+    text = made.read_text(encoding="utf-8").partition("\n")[2]  # without the seal of the cache: it may be edited
     if target == "-":
         click.echo(text, nl=False)
         return

@@ -42,7 +42,8 @@ def _fit(mol, path):
 def _ending(mol, chain):
     if mol.double is not None:
         at = min(chain.index(i) for i in mol.double) + 1
-        return "ene" if len(chain) == 2 else f"-{at}-ene"
+        plain = len(chain) == 2 or (len(chain) == mol.carbons == 3 and not sum(mol.chlorine))
+        return "ene" if plain else f"-{at}-ene"
     if mol.free is None:
         return "ane"
     return "yl" if len(chain) <= 2 else f"an-{chain.index(mol.free) + 1}-yl"

@@ -34,7 +34,7 @@ HEAD = """\
 # {left}
 # Rates of a kind of place, measured ones first; thermochemistry measured, else by groups, 200 to 2500 K. Chlorine
 # that leaves beside a free carbon gives alkenes; hydrogen of alkenes is not attacked.
-# Keys and units: see data/mechanism/light_alkanes.yaml. boiling [K], critical [K, Pa]: for dew points.
+# Keys and units: see data/mechanism/light_alkanes.yaml; volatility [K, Pa] is for dew points.
 
 description: >-
   {title}
@@ -81,7 +81,7 @@ def _folded(words, indent, width=100):
     lines, line = [], ""
     for word in words.split(", "):
         if len(line) + len(word) > width:
-            lines.append(line)
+            lines.append(line.rstrip())
             line = " " * indent
         line += word + ", "
     return "\n".join([*lines, line]).removesuffix(", ")
