@@ -25,7 +25,7 @@ SPAN = 150.0  # K; how much hotter than the feed a made mechanism is weighed whe
 @click.option("--error", default="0.1 %", show_default=True,
               help="Share of the organic chlorine that the written mechanism may leave out.")
 @click.option("--couplings/--no-couplings", default=True, show_default=True,
-              help="Whether the written mechanism holds products of two radicals.")
+              help="Whether the written mechanism tells the products of two radicals apart by position.")
 @click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True, help="Override one entry of the case.")
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object.")
 def slate(case, feeds, ratio, temperature, pressure, light, chlorines, hours, target, error, couplings, overrides,

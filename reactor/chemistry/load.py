@@ -74,7 +74,7 @@ def _read(file, stamp, shipped):
         g=np.array([_numbers(note.get("uncertainty", {}).get("g"))[0] for note in notes]),
         status=tuple(note.get("status", NOT_STATED) for note in notes),
         equations=tuple(reaction.equation for reaction in gas.reactions()),
-        cited=_cited(notes, gas, file), remarks=remarks,
+        cited=_cited(notes, gas, file), remarks=remarks, condensing=_condensing(gas),
     )  # fmt: skip
 
 
@@ -138,6 +138,13 @@ def _kind(species):
     return "radical" if round(electrons - species.charge) % 2 else "molecule"
 
 
+def _condensing(gas):
+    """Return the constants of the vapour pressure of each species that states them."""
+    stated = {s.name: s.input_data["volatility"] for s in gas.species() if "volatility" in s.input_data}
+    names = ("boiling", "critical-temperature", "critical-pressure")
+    return {species: tuple(float(constants[name]) for name in names) for species, constants in stated.items()}
+
+
 def _numbers(value, length=1):
     """Return floats; nan for each that is not stated."""
     values = list(value) if isinstance(value, list | tuple) else [value]
@@ -150,6 +157,7 @@ def _cited(notes, gas, file):
         "rate constants": notes,
         "thermodynamic data": species,
         "transport data": [s["transport"] for s in species if "transport" in s],
+        "boiling points": [s["volatility"] for s in species if "volatility" in s],
     }
     entries = (
         library.Cited(what, entry.get("source", file.name), entry.get("status", NOT_STATED))

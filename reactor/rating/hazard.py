@@ -157,7 +157,7 @@ def dew_margin(profile, gas):
     for i in np.unique(np.linspace(0, len(profile.z) - 1, DEW_STATIONS).round().astype(int)):
         share = profile.moles[i] / profile.moles[i].sum()
         mixture = dict(zip(gas.species, share, strict=True))
-        dew = dewpoint.dew_point(mixture, profile.pressure[i])
+        dew = dewpoint.dew_point(mixture, profile.pressure[i], gas.condensing)
         coldest = min(profile.temperature[i], profile.coolant[i])
         if dew is not None:
             margins.append(coldest - dew.temperature)

@@ -1,6 +1,6 @@
 """From a feed to a pruned mechanism file: the one call behind the command and a case."""
 
-from reactor.chemistry.network import cache, names, prune, write
+from reactor.chemistry.network import cache, names, prune, small, write
 from reactor.chemistry.network.enumerate import network
 from reactor.chemistry.network.tree import molecule
 from reactor.errors import CaseError
@@ -40,7 +40,24 @@ def structures(feed):
     return found
 
 
-def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings=True):
+def beyond_small(feed):
+    """
+    Tell whether a feed holds an alkane that the small mechanism lets pass.
+
+    Examples
+    --------
+    >>> beyond_small({"CH4": 0.99, "n-C4H10": 0.01}), beyond_small({"C3H8": 1.0, "N2": 0.1})
+    (True, False)
+    """
+    attacked = {key for left, _ in small.reactions() if "Cl" in left for key in left}
+    codes = (names.find(word) for word, amount in feed.items() if amount > 0)
+    return any(
+        molecule(code).double is None and molecule(code).sites() and names.key(code) not in attacked
+        for code in codes if code and not sum(molecule(code).chlorine)
+    )  # fmt: skip
+
+
+def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings=True, most=None, vessels=prune.VESSELS):
     """
     Return the path of the pruned mechanism of a feed; made once, then taken from the cache.
 
@@ -57,7 +74,12 @@ def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings
     error : float
         Organic chlorine that may be left out, of all. [-]
     couplings : bool
-        Whether products of two radicals are wanted.
+        Whether products of two radicals are told apart by position; else lumped by formula.
+    most : int or None
+        Species wanted at most: beyond it, couplings are lumped, then ten times the error is taken; the title says so.
+        [-]
+    vessels : sequence of str
+        Where species are weighed: tube, tank or both.
 
     Returns
     -------
@@ -69,11 +91,15 @@ def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings
     shares = {code: round(amount / total, 6) for code, amount in sorted(codes.items())}
     span = tuple(min(max(float(T), COLDEST), HOTTEST) for T in temperatures)
     request = {"feed": shares, "ratio": float(ratio), "temperatures": span, "chlorines": chlorines, "error": error,
-               "couplings": couplings}  # fmt: skip
+               "couplings": couplings, "most": most, "vessels": list(vessels)}  # fmt: skip
 
     def make():
         whole = network(tuple(shares), chlorines)
-        return write.text(prune.prune(whole, shares, ratio, span, error, couplings), title(shares, request))
+        for tried in (request, request | {"couplings": False}, request | {"couplings": False, "error": 10 * error}):
+            pruned = prune.prune(whole, shares, ratio, span, tried["error"], tried["couplings"], vessels)
+            if most is None or write.size(pruned) <= most:
+                break
+        return write.text(pruned, title(shares, tried))
 
     return cache.kept(request, make)
 
@@ -82,8 +108,8 @@ def title(shares, request):
     """Return one line that says what a mechanism was made for."""
     fed = ", ".join(f"{names.name(code)} {100 * share:.4g} %" for code, share in shares.items())
     cold, hot = request["temperatures"]
-    pairs = "with" if request["couplings"] else "without"
+    pairs = "couplings by position" if request["couplings"] else "couplings lumped by formula"
     return (
         f"Chlorination of {fed}: up to {request['chlorines']} Cl, {request['ratio']:.4g}:1, {cold:.0f} to {hot:.0f} K, "
-        f"{pairs} couplings, pruned at {100 * request['error']:.3g} % of the organic chlorine"
+        f"{pairs}, pruned at {100 * request['error']:.3g} % of the organic chlorine"
     )

@@ -21,10 +21,9 @@ APPLICATION = "photochlorination-reactor"
 
 def folder():
     """Return the cache folder of this program, by the custom of the system; it need not exist."""
+    own = Path.home() / ("Library/Caches" if sys.platform == "darwin" else ".cache")
     home = os.environ.get("XDG_CACHE_HOME") or os.environ.get("LOCALAPPDATA")
-    if home is None:
-        home = Path.home() / ("Library/Caches" if sys.platform == "darwin" else ".cache")
-    return Path(home) / APPLICATION / "networks"
+    return (Path(home) if home else own) / APPLICATION / "networks"
 
 
 def kept(request, make):

@@ -15,6 +15,7 @@ from reactor.chemistry.network.traces import USED, pairs, traces
 from reactor.chemistry.network.tree import molecule
 
 ON_THE_WAY = (0.25, 0.5, 0.75, 1.0)  # shares of the uptake at which species are weighed
+VESSELS = ("tube", "tank")
 LIGHT, PRESSURE = 1e-3, 1.2e5  # 1/s, Pa; the ranking of couplings hardly depends on either
 COARSER = 10.0  # couplings are traces: left out up to so many times the error, of the couplings themselves
 
@@ -30,6 +31,8 @@ class Pruned:
         Feeds and substitution products that are kept.
     pairs : tuple
         (radical, radical, product) of the couplings that are kept.
+    stand_in : dict
+        {product: the product that stands for it}: without couplings by position, one isomer for each formula.
     coupled : tuple of str
         Coupling products that chlorine attacks once more, and their kept chlorides stand in `chlorides`.
     chlorides : tuple of str
@@ -44,6 +47,7 @@ class Pruned:
 
     network: Network
     pairs: tuple
+    stand_in: dict
     coupled: tuple
     chlorides: tuple
     alkenes: tuple
@@ -51,7 +55,7 @@ class Pruned:
     share: float
 
 
-def prune(network, feed, ratio, temperatures, error, couplings=True):
+def prune(network, feed, ratio, temperatures, error, couplings=True, vessels=VESSELS):
     """
     Return the part of a network that carries all but a stated share of the organic chlorine.
 
@@ -68,36 +72,38 @@ def prune(network, feed, ratio, temperatures, error, couplings=True):
     error : float
         Share of the organic chlorine that may be left out. [-]
     couplings : bool
-        Whether products of two radicals are wanted.
+        Whether products of two radicals are told apart by position and attacked by chlorine; else lumped by formula.
+    vessels : sequence of str
+        tube, tank or both.
 
     Returns
     -------
     Pruned
     """
     slates = [Slate(network, feed, T) for T in temperatures]
-    weight, largest = weights(slates, ratio)
-    kept, share = _keep(network, weight, largest, error)
+    shares, amounts = weights(slates, ratio, vessels)
+    kept, share = _keep(network, shares, amounts, error)
     part = network.within(kept)
     dropped = tuple(code for code in network.molecules if code not in kept)
-    if not couplings:
-        return Pruned(part, (), (), (), (), dropped, share)
     found = [traces(Slate(part, feed, slate.T), _within_reach(part, feed, slate.T, ratio), PRESSURE, LIGHT)
              for slate in slates]  # fmt: skip
     joined, coupled, chlorides = _couplings(part, found, COARSER * error)
-    return Pruned(part, joined, coupled, chlorides, _alkenes(found, error), dropped, share)
+    alkenes = _alkenes(found, error)
+    if not couplings:
+        return Pruned(part, joined, _lumped(joined, found), (), (), alkenes, dropped, share)
+    return Pruned(part, joined, {}, coupled, chlorides, alkenes, dropped, share)
 
 
-def weights(slates, ratio):
-    """Return each molecule's share of the organic chlorine and its amount, the largest over tube, tank and the way."""
-    share = np.zeros(len(slates[0].codes))
-    amount = share.copy()
+def weights(slates, ratio, vessels=VESSELS):
+    """Return each molecule's share of the organic chlorine and its amount, one row a state: temperature, way, vessel."""
+    share, amount = [], []
     for slate in slates:
-        for kind in ("tube", "tank"):
+        for kind in vessels:
             for part in ON_THE_WAY:
                 x, _ = slate.at_uptake(part * _reach(slate, ratio), kind)
-                share = np.maximum(share, slate.chlorine * x / (slate.chlorine @ x))
-                amount = np.maximum(amount, x)
-    return dict(zip(slates[0].codes, share, strict=True)), dict(zip(slates[0].codes, amount, strict=True))
+                share.append(slate.chlorine * x / (slate.chlorine @ x))
+                amount.append(x)
+    return np.array(share), np.array(amount)
 
 
 def _reach(slate, ratio):
@@ -111,21 +117,23 @@ def _within_reach(network, feed, T, ratio):
     return USED / _reach(slate, ratio)
 
 
-def _keep(network, weight, amount, error):
-    """Return the kept molecules and the share of the chlorine left out: least first, each with a way to it."""
-    order = sorted((code for code in network.molecules if code not in network.feeds), key=lambda code: weight[code])
-    dropped, share = set(), 0.0
-    for code in order:
-        if share + weight[code] > error:
+def _keep(network, share, amount, error):
+    """Return the kept molecules and the chlorine left out: least first, each with a way to it."""
+    most, codes = share.max(axis=0), network.molecules
+    order = sorted((i for i, code in enumerate(codes) if code not in network.feeds), key=lambda i: most[i])
+    dropped, lost = set(), np.zeros(len(share))
+    for i in order:
+        if (lost + share[:, i]).max() > error:
             break
-        share += weight[code]
-        dropped.add(code)
-    kept = [code for code in network.molecules if code not in dropped]
+        lost += share[:, i]
+        dropped.add(codes[i])
+    kept = [code for code in codes if code not in dropped]
+    largest = dict(zip(codes, amount.max(axis=0), strict=True))
     for code in reversed(kept):  # fewest chlorines last: a way back is made before its own is asked for
         parents = [step.parent for step in network.steps if step.product == code]
         if code not in network.feeds and parents and not set(parents) & set(kept):
-            kept.append(max(parents, key=lambda parent: amount[parent]))
-    return set(kept), share
+            kept.append(max(parents, key=lambda parent: largest[parent]))
+    return set(kept), float(lost.max())
 
 
 def _couplings(network, found, error):
@@ -149,6 +157,15 @@ def _couplings(network, found, error):
     chlorides = tuple(sorted({c for each in found for c in each.chlorides} - out))
     attacked = {a for *_, a in joined if not sum(molecule(a).chlorine)} if chlorides else set()
     return joined, tuple(sorted(attacked - set(network.molecules))), chlorides
+
+
+def _lumped(joined, found):
+    """Return {product: the most abundant product with its formula}."""
+    amount = {product: sum(each.couplings.get(product, 0.0) for each in found) for *_, product in joined}
+    best: dict = {}
+    for code in sorted(amount, key=lambda code: (-amount[code], code)):
+        best.setdefault(molecule(code).formula, code)
+    return {code: best[molecule(code).formula] for code in amount}
 
 
 def _alkenes(found, error):

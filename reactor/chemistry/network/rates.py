@@ -205,7 +205,7 @@ def coupling(one, other):
     if one != other:
         A, n = 2 * math.sqrt(A * b[0] * 300.0 ** -b[1]), (a[1] + b[1]) / 2
     share = math.sqrt(a[3] * b[3])
-    moves = {}
+    moves: dict = {}
     for donor in (one, other):
         if not sum(molecule(donor).chlorine):
             for alkene, hydrogens in without_hydrogen(donor).items():

@@ -116,14 +116,14 @@ class Slate:
 
     def most(self):
         """Return the uptake when nothing more can react, after an exposure without end."""
-        slowest = np.min(-self.K.diagonal()[self.K.diagonal() < 0], initial=np.inf)
+        slowest = float(np.min(-self.K.diagonal()[self.K.diagonal() < 0], initial=np.inf))
         return self.uptake(self.tank(1e9 / slowest))
 
     def _solve(self, make, excess):
         """Return amounts and exposure where a rising function of the amounts passes zero."""
         from scipy.optimize import brentq
 
-        high = 1.0 / max(-np.diag(self.K) @ self.start, 1e-30)
+        high = 1.0 / max(float(-np.diag(self.K) @ self.start), 1e-30)
         while excess(make(high)) < 0.0:
             high *= 2.0
             if high > 1e12:

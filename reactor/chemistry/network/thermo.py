@@ -26,8 +26,16 @@ HYDROGEN = 217.998e3  # J/mol, enthalpy of a hydrogen atom at 298.15 K (atct)
 
 class Thermo(NamedTuple):
     """
-    Enthalpy of formation [J/mol] and entropy [J/mol/K] at 298.15 K, heat capacities on `GRID` [J/mol/K], and
-    `source`, `status`, `note` of the enthalpy and what goes with it.
+    Thermochemistry of a species, ideal gas, 1 bar.
+
+    Parameters
+    ----------
+    H, S : float
+        Enthalpy of formation [J/mol] and entropy [J/mol/K] at 298.15 K.
+    cp : array
+        Heat capacities on `GRID`. [J/mol/K]
+    source, status, note : str
+        Of the enthalpy, and what goes with it.
     """
 
     H: float

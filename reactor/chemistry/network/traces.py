@@ -81,7 +81,7 @@ def traces(slate, ratio, pressure, photolysis):
     for (a, b, _), (kc, moves) in made_by.items():
         ends = ends + (kc(T) + _sum(moves, T)) * rho[a] * rho[b]
     atoms = np.sqrt(photolysis * chlorine * density / ends)  # [Cl] in 1/cm3
-    grown = {}
+    grown: dict = {}
     for (a, b, product), (kc, _) in made_by.items():
         speed = kc(T) * rho[a] * rho[b] * atoms / density / SCALE
         grown[product] = grown.get(product, 0.0) + _integral(speed, xi)

@@ -167,7 +167,8 @@ def molecule(code):
     Molecule(chlorine=(3,), bonds=(), free=None, double=None)
     """
     chlorine: list[int] = []
-    bonds, free, double, opened, at, twice = [], None, None, [], None, False
+    opened: list[int] = []
+    bonds, free, double, at, twice = [], None, None, -1, False
     i = 0
     while i < len(code):
         if code[i] == "(":
@@ -176,14 +177,14 @@ def molecule(code):
             at = opened.pop()
         elif code[i] == "=":
             twice = True
-        elif code.startswith("Cl", i) and at is None:  # a code may begin with chlorine
+        elif code.startswith("Cl", i) and at < 0:  # a code may begin with chlorine
             return molecule(code[2] + "(Cl)" + code[3:])
         elif code.startswith("Cl", i):
             chlorine[at] += 1
             i += 1
         else:
             chlorine.append(0)
-            if at is not None:
+            if at >= 0:
                 bonds.append((at, len(chlorine) - 1))
                 double = bonds[-1] if twice else double
             at, twice = len(chlorine) - 1, False

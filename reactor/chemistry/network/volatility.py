@@ -7,10 +7,11 @@ References
 .. [2] leekesler: vapour pressure from boiling point and critical constants.
 """
 
-import math
 from dataclasses import replace
 from functools import cache
 from typing import NamedTuple
+
+import numpy as np
 
 from reactor import library
 from reactor.chemistry.network.tree import molecule, with_hydrogen
@@ -148,14 +149,36 @@ def vapour_pressure(code, T):
     2270
     """
     found = volatility(code)
-    f0, f1 = _shape(found.boiling / found.critical_temperature)
-    acentric = (math.log(ATMOSPHERE / found.critical_pressure) - f0) / f1
-    f0, f1 = _shape(T / found.critical_temperature)
-    return found.critical_pressure * math.exp(f0 + acentric * f1)
+    return corresponding_states(
+        found.boiling, found.critical_temperature, found.critical_pressure, T
+    )
+
+
+def corresponding_states(boiling, critical_temperature, critical_pressure, T):
+    """
+    Return the vapour pressure over a liquid from three constants.
+
+    Parameters
+    ----------
+    boiling, critical_temperature : float
+        Normal boiling point and critical temperature. [K]
+    critical_pressure : float
+        [Pa]
+    T : float or array
+        Temperature; above the critical one it is extrapolated. [K]
+
+    References
+    ----------
+    .. [1] leekesler.
+    """
+    f0, f1 = _shape(boiling / critical_temperature)
+    acentric = (np.log(ATMOSPHERE / critical_pressure) - f0) / f1
+    f0, f1 = _shape(T / critical_temperature)
+    return critical_pressure * np.exp(f0 + acentric * f1)
 
 
 def _shape(Tr):
-    logs, sixth = math.log(Tr), Tr**6
+    logs, sixth = np.log(Tr), Tr**6
     return (
         5.92714 - 6.09648 / Tr - 1.28862 * logs + 0.169347 * sixth,
         15.2518 - 15.6875 / Tr - 13.4721 * logs + 0.43577 * sixth,

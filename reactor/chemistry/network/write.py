@@ -76,6 +76,12 @@ def text(pruned, title):
     return "".join(parts)
 
 
+def size(pruned):
+    """Return about how many species the mechanism of a pruned network holds."""
+    made_ = Reactions(pruned)
+    return len(made_.species) + len(made_.peroxies) + len(ALWAYS)
+
+
 def _folded(words, indent, width=100):
     """Return a long list over several lines."""
     lines, line = [], ""
@@ -100,7 +106,8 @@ class Reactions:
             self.steps += [
                 step for step in made.substitutions(code) if step.product in (*pruned.chlorides, *held)
             ]
-        joined = [product for *_, product in pruned.pairs]
+        self.stand_in = pruned.stand_in
+        joined = [self.stand_in.get(product, product) for *_, product in pruned.pairs]
         ordered = (
             *pruned.network.molecules, *joined, *(s.product for s in self.steps), *pruned.alkenes,
             *(s.radical for s in self.steps),
@@ -159,7 +166,7 @@ class Reactions:
                     self._add(pair, (names.key(alkene), names.key(whole)), rate)
                 else:
                     joined = joined._replace(A=joined.A + rate.A)
-            self._add(pair, (names.key(product),), joined)
+            self._add(pair, (names.key(self.stand_in.get(product, product)),), joined)
         for code in pruned.network.radicals:
             joined, losing = made.with_atom(code)
             for alkene, rate in losing.items():
