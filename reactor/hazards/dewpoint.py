@@ -131,7 +131,8 @@ def _grid():
 @cache
 def _estimated(constants):
     """Return 1/vapour pressure [1/Pa] on the grid by corresponding states."""
-    return 1 / corresponding_states(*constants, _grid()[0])
+    boiling, hottest, highest = constants
+    return 1 / corresponding_states(boiling, hottest, highest, _grid()[0])
 
 
 def _first(partial, phase, more):
