@@ -42,6 +42,12 @@ def _name(found, key):
     return found["species"].get(key, {}).get("name", key)
 
 
+def _label(found, key):
+    """Return the name of a species as wide as its column; a longer one takes a line of its own."""
+    name = _name(found, key)
+    return f"{name:<{LABEL}}" if len(name) < LABEL else name + "\n" + " " * LABEL
+
+
 def _products(found, row):
     """Return {key: share} of the chlorides that a row holds beyond what was fed."""
     made = {key: max(n - found["feed"].get(key, 0.0), 0.0) for key, n in row.items() if found["species"][key]["chlorine"]}
@@ -61,7 +67,7 @@ def _map(found, vessel, emphasis):
     rows = [head]
     for key in keys:
         cells = ["        -" if row is None else f"{100 * row[key]:9.3f}" for row in shares]
-        rows.append(f"{_name(found, key):<{LABEL}}" + "".join(cells))
+        rows.append(_label(found, key) + "".join(cells))
     return section(f"{TITLES[vessel]}: mol % of the chlorides formed", rows, emphasis)
 
 
@@ -86,7 +92,7 @@ def _at_ratio(found, hours, emphasis):
         cells = [f"{100 * both[vessel][key]:11.3f}" if vessel in both else f"{'-':>11}" for vessel in TITLES]
         boils = found["species"][key]["boiling_point"] - 273.15
         amount = (tube or tank)[key]
-        rows.append(f"{_name(found, key):<{LABEL}}{''.join(cells)}{boils:12.1f}{_yearly(found, key, amount, hours):>12}")
+        rows.append(f"{_label(found, key)}{''.join(cells)}{boils:12.1f}{_yearly(found, key, amount, hours):>12}")
     return section(f"ALL CHLORINE TAKEN UP AT {found['ratio']:.4g}:1", rows, emphasis)
 
 
@@ -99,7 +105,7 @@ def _couplings(found, hours, emphasis):
     for key in sorted(amounts, key=lambda key: -amounts[key]):
         if amounts[key] >= TRACE * total:
             ppm, year = figure(1e6 * amounts[key], 3), _yearly(found, key, amounts[key], hours)
-            rows.append(f"{_name(found, key):<{LABEL}}{ppm:>11}{'':>23}{year:>12}")
+            rows.append(f"{_label(found, key)}{ppm:>11}{'':>23}{year:>12}")
     rows.append(f"at J = {found['photolysis']:.3g} 1/s; all go with the square root of J")
     return section("COUPLINGS AND THEIR CHLORIDES (a factor 2 to 3)", rows, emphasis)
 
@@ -110,8 +116,8 @@ def _alkenes(found, hours, emphasis):
         return ""
     rows = [f"{'mol a million mol fed':<{LABEL}}{'plug flow':>11}"]
     for key in sorted(amounts, key=lambda key: -amounts[key]):
-        rows.append(f"{_name(found, key):<{LABEL}}{figure(1e6 * amounts[key], 3):>11}")
-    rows.append("as the last 0.1 % of the chlorine is left; the gas then has little to hold them down")
+        rows.append(f"{_label(found, key)}{figure(1e6 * amounts[key], 3):>11}")
+    rows.append("when 0.1 % of the chlorine is left, which holds them down no longer")
     return section("ALKENES BY LOSS OF CHLORINE (a factor 3)", rows, emphasis)
 
 
