@@ -166,7 +166,7 @@ def test_factors_reproduce_the_temperature_dependence_they_were_checked_on():
     # Source: sarzynski2012, beta 592 K (seen); the rule gives E = 652 K by own_networks. Kind: measured, as recorded.
     chloroethane = tree.molecule("CCCl").code
     carbon = next(i for i, _ in tree.molecule(chloroethane).sites() if not tree.molecule(chloroethane).chlorine[i])
-    assert rates.rule(chloroethane, carbon, 1).E == approx(652.0, abs=1.0)
+    assert approx(652.0, abs=1.0) == rates.rule(chloroethane, carbon, 1).E
 
 
 def test_every_generated_rate_states_source_status_range_and_factor():
@@ -405,7 +405,7 @@ def test_the_same_request_gives_the_same_text():
 def test_a_feed_without_alkanes_is_refused():
     with pytest.raises(CaseError, match="no alkane"):
         build.structures({"N2": 1.0, "C2H4": 1.0})
-    with pytest.raises(CaseError, match="six|6"):
+    with pytest.raises(CaseError, match="6 carbon"):
         made.network([tree.molecule("CCCCCCC").code], 1)
 
 
@@ -418,7 +418,7 @@ def test_groups_serve_molecules_without_data_and_say_so():
 
 def test_measured_values_go_before_groups():
     # Source: crc through chemicals 1.5.2: enthalpy of 1-chlorobutane -154.4 kJ/mol, seen. Kind: measured.
-    assert thermo(tree.molecule("CCCCCl").code).H == approx(-154.4e3, abs=60.0)
+    assert approx(-154.4e3, abs=60.0) == thermo(tree.molecule("CCCCCl").code).H
 
 
 # ---------------------------------------------------------------- the command
@@ -445,7 +445,8 @@ def test_the_command_prints_json_of_a_case():
 
 @pytest.mark.parametrize(("words", "message"), [
     (["slate"], "needed"), (["slate", "--feed", "propane=x"], "number"), (["slate", "--feed", "argon"], "no alkane"),
-    (["slate", "--feed", "propane", "--temperature", "80"], "unit|degC"), (["slate", "--feed", "propane", "--write", "-"], "ratio"),
+    (["slate", "--feed", "propane", "--temperature", "80"], "degC"),
+    (["slate", "--feed", "propane", "--write", "-"], "ratio"),
 ])
 def test_the_command_says_what_is_wrong(words, message):
     with pytest.raises(CaseError, match=message):

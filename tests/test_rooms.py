@@ -9,7 +9,7 @@ import pytest
 
 PACKAGE = Path(__file__).parent.parent / "reactor"
 ROOMS = ["errors", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "kernel", "models",
-         "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli_slate", "cli"]
+         "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli"]
 MAY_IMPORT = {
     "errors": set(),
     "curve": set(),

@@ -34,7 +34,8 @@ def mechanism(case):
     fed = {species: amount for species, amount in moles.items() if network.find(species)}
     vessels = ("tube",) if case.vessel.kind == "plug flow" else ("tank",)
     span = coldest, case.limits.hottest or coldest + HOTTER
-    return chemistry.mechanism(network.mechanism_file(fed, sum(fed.values()) / moles["Cl2"], span, most=MOST, vessels=vessels))
+    ratio = sum(fed.values()) / moles["Cl2"]
+    return chemistry.mechanism(network.mechanism_file(fed, ratio, span, most=MOST, vessels=vessels))
 
 
 def plant(case, gas, light, U_factor=1.0, flow=1.0):

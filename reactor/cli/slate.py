@@ -1,9 +1,8 @@
 """The command `slate`: the product map of a feed, and the mechanism made for it."""
 
-from pathlib import Path
-
 import click
 
+from reactor.cli.common import OVERRIDE, emphasis, show, write
 from reactor.errors import CaseError
 
 SPAN = 150.0  # K; how much hotter than the feed a made mechanism is weighed where the case states no limit
@@ -26,7 +25,7 @@ SPAN = 150.0  # K; how much hotter than the feed a made mechanism is weighed whe
               help="Share of the organic chlorine that the written mechanism may leave out.")
 @click.option("--couplings/--no-couplings", default=True, show_default=True,
               help="Whether the written mechanism tells the products of two radicals apart by position.")
-@click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True, help="Override one entry of the case.")
+@OVERRIDE
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object.")
 def slate(case, feeds, ratio, temperature, pressure, light, chlorines, hours, target, error, couplings, overrides,
           as_json):  # fmt: skip
@@ -55,7 +54,7 @@ def slate(case, feeds, ratio, temperature, pressure, light, chlorines, hours, ta
         _mechanism(network, asked, hottest, chlorines, _read(kinds.FRACTION, error, "error"), couplings, target)
         if target == "-":
             return
-    click.echo(_json(found) if as_json else report.render(found, hours), nl=as_json)
+    show(_json(found) + "\n" if as_json else report.render(found, hours, emphasis()))
 
 
 def _read(kind, typed, name):
@@ -111,14 +110,9 @@ def _mechanism(network, asked, hottest, chlorines, error, couplings, target):
     span = (asked["T"], max(hottest or asked["T"] + SPAN, asked["T"]))
     made = network.mechanism_file(asked["feed"], asked["ratio"], span, chlorines, error, couplings)
     text = made.read_text(encoding="utf-8").partition("\n")[2]  # without the seal of the cache: it may be edited
-    if target == "-":
-        click.echo(text, nl=False)
-        return
-    try:
-        Path(target).write_text(text, encoding="utf-8", newline="")
-    except OSError as fault:
-        raise CaseError(f"{target}: cannot be written ({fault.strerror}); choose another place") from None
-    click.echo(f'{target} written; use it with: --set chemistry.mechanism="{target}"', err=True)
+    write(target, text)
+    if target != "-":
+        show(f'{target} written; use it with: --set chemistry.mechanism="{target}"\n', to_stderr=True)
 
 
 def _json(found):
