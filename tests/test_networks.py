@@ -498,3 +498,19 @@ def test_a_propane_network_rates_within_three_times_the_small_mechanism(tmp_path
             reactor.rate(one)
             spent[name].append(time.perf_counter() - start)
     assert min(spent["network"]) < 3.0 * min(spent["small"])
+
+
+def test_chloroform_with_oxygen_is_rated_with_phosgene_and_its_exposure_figures(tmp_path, monkeypatch):
+    # Source of the figures: niosh_idlh, OSHA PEL 0.1 ppm, seen. Kind: limit: every O2 gives at most two COCl2.
+    import reactor
+
+    monkeypatch.setenv("XDG_CACHE_HOME", str(tmp_path))
+    text = (library.folder("cases") / "linnet.toml").read_text()
+    text = text.replace('C3H8 = "100 mol%"', 'CHCl3 = "balance", O2 = "300 ppm_mol"').replace('"30 degC"', '"90 degC"')
+    path = tmp_path / "case.toml"
+    path.write_text(text.replace('"284 kg/h"', '"100 kg/h"').replace("ratio = 8", 'flow = "20 kg/h"'))
+    result = reactor.rate(reactor.load(path))
+    made_ = result.results["products"]["COCl2"]["value"] / 98.92  # kmol/h
+    oxygen = 100.0 * 300e-6 / 119.38
+    assert 0.1 * oxygen < made_ <= 2.0 * oxygen
+    assert any("phosgene" in remark and "OSHA PEL 0.1 ppm" in remark for remark in result.remarks)

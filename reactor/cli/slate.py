@@ -16,8 +16,8 @@ SPAN = 150.0  # K; how much hotter than the feed a made mechanism is weighed whe
 @click.option("--temperature", metavar="T", help='Like "80 degC"; of a case: that of its alkane.')
 @click.option("--pressure", metavar="P", help='Like "1.2 bar absolute", for the couplings.')
 @click.option("--light", metavar="J", help='Mean photolysis rate like "1e-3 1/s", for the couplings.')
-@click.option("--chlorines", type=click.IntRange(1, 8), default=3, show_default=True,
-              help="Largest number of chlorine atoms in a product.")
+@click.option("--chlorines", type=click.IntRange(1, 8),
+              help="Largest number of chlorine atoms in a product; by default 3, of methane 4, one more than fed.")
 @click.option("--hours", type=float, default=8000.0, show_default=True, help="Running hours of a year.")
 @click.option("--write", "target", metavar="FILE",
               help="Write the pruned mechanism, to be named as chemistry.mechanism; - prints it.")

@@ -40,9 +40,15 @@ def structures(feed):
     return found
 
 
+def enough(codes):
+    """Return the chlorine atoms to count to: 3, for one carbon 4, and one more than what is fed."""
+    fed = max(sum(molecule(code).chlorine) for code in codes)
+    return max(3, fed + 1, 4 if any(molecule(code).carbons == 1 for code in codes) else 0)
+
+
 def beyond_small(feed):
     """
-    Tell whether a feed holds an alkane that the small mechanism lets pass.
+    Tell whether a feed holds what the small mechanism lets pass: an alkane, or oxygen with chloroform.
 
     Examples
     --------
@@ -50,14 +56,16 @@ def beyond_small(feed):
     (True, False)
     """
     attacked = {key for left, _ in small.reactions() if "Cl" in left for key in left}
-    codes = (names.find(word) for word, amount in feed.items() if amount > 0)
+    codes = [names.find(word) for word, amount in feed.items() if amount > 0]
+    if feed.get("O2", 0.0) > 0 and {"CHCl3", "CCl4"} & {names.key(code) for code in codes if code}:
+        return True  # phosgene, and a chain that goes on
     return any(
         molecule(code).double is None and molecule(code).sites() and names.key(code) not in attacked
         for code in codes if code and not sum(molecule(code).chlorine)
     )  # fmt: skip
 
 
-def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings=True, most=None, vessels=prune.VESSELS):
+def mechanism_file(feed, ratio, temperatures, chlorines=None, error=1e-3, couplings=True, most=None, vessels=prune.VESSELS):
     """
     Return the path of the pruned mechanism of a feed; made once, then taken from the cache.
 
@@ -69,8 +77,8 @@ def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings
         Alkane per chlorine. [-]
     temperatures : pair of float
         Coldest and hottest gas. [K]
-    chlorines : int
-        Largest number of chlorine atoms in a product. [-]
+    chlorines : int or None
+        Largest number of chlorine atoms in a product; None: as `enough` says. [-]
     error : float
         Organic chlorine that may be left out, of all. [-]
     couplings : bool
@@ -87,6 +95,7 @@ def mechanism_file(feed, ratio, temperatures, chlorines=3, error=1e-3, couplings
         To be named as chemistry.mechanism.
     """
     codes = structures(feed)
+    chlorines = chlorines or enough(codes)
     total = sum(codes.values())
     shares = {code: round(amount / total, 6) for code, amount in sorted(codes.items())}
     span = tuple(min(max(float(T), COLDEST), HOTTEST) for T in temperatures)

@@ -1,7 +1,7 @@
 """The product map of a feed before any reactor: split against conversion, what a ratio gives, and the traces."""
 
 from reactor.chemistry.network import names
-from reactor.chemistry.network.build import structures
+from reactor.chemistry.network.build import enough, structures
 from reactor.chemistry.network.enumerate import network
 from reactor.chemistry.network.slate import LOSS_COUNTS, Slate
 from reactor.chemistry.network.traces import traces
@@ -19,7 +19,7 @@ METHANE = (
 VESSELS = {"tube": "plug_flow", "tank": "stirred_tank"}
 
 
-def survey(feed, ratio, T, pressure=1.2e5, photolysis=1e-3, chlorines=3, conversions=CONVERSIONS):
+def survey(feed, ratio, T, pressure=1.2e5, photolysis=1e-3, chlorines=None, conversions=CONVERSIONS):
     """
     Return the product map of a feed as plain records.
 
@@ -35,8 +35,8 @@ def survey(feed, ratio, T, pressure=1.2e5, photolysis=1e-3, chlorines=3, convers
         [Pa]
     photolysis : float
         Mean J of the lit gas, for the couplings only. [1/s]
-    chlorines : int
-        Largest number of chlorine atoms. [-]
+    chlorines : int or None
+        Largest number of chlorine atoms; None: 3, for one carbon 4, and one more than what is fed. [-]
     conversions : sequence of float
         Shares of the feed converted. [-]
 
@@ -47,6 +47,7 @@ def survey(feed, ratio, T, pressure=1.2e5, photolysis=1e-3, chlorines=3, convers
         cautions, cited.
     """
     codes = structures(feed)
+    chlorines = chlorines or enough(codes)
     total = sum(codes.values())
     whole = network(tuple(codes), chlorines)
     slate = Slate(whole, codes, T)
