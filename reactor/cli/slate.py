@@ -29,9 +29,10 @@ SPAN = 150.0  # K; how much hotter than the feed a made mechanism is weighed whe
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object.")
 def slate(case, feeds, ratio, temperature, pressure, light, chlorines, hours, target, error, couplings, overrides,
           as_json):  # fmt: skip
-    """Map the products of a CASE, or of a --feed, before any reactor: isomers, poly, couplings.
+    """Map the products of a feed before any reactor.
 
-    Split against conversion in plug flow and in a stirred tank, whatever the light.
+    Of a CASE or of --feed: split of isomers and polychlorides against conversion, in plug flow and in a stirred
+    tank, whatever the light; couplings and alkenes as traces.
     """
     from reactor.chemistry import network
     from reactor.report import slate as report

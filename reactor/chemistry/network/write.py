@@ -114,7 +114,7 @@ class Reactions:
         )  # fmt: skip
         sizes = {molecule(code).carbons for code in ordered}
         bare = {molecule(code).carbons for code in ordered if set(molecule(code).atoms) == {"C", "H"} and code in joined}
-        bare |= {molecule(code).carbons for code in pruned.network.feeds}
+        bare |= {molecule(code).carbons for code in pruned.network.feeds if not sum(molecule(code).chlorine)}
         missing = [alkanes(size)[-1] for size in sorted(sizes - bare)]
         self.species = tuple(dict.fromkeys((*ordered, *missing, *map(_code, LADDER))))
         self._substitutions(pruned.network.radicals)
