@@ -6,7 +6,7 @@ from reactor.models.assemble import mixed_feed
 from reactor.rating import account, figures, hazard, identity, judge
 from reactor.rating.bands import bands
 from reactor.rating.closures import closures
-from reactor.rating.plant import lamps, plant
+from reactor.rating.plant import lamps, mechanism, plant
 from reactor.result import Result
 
 
@@ -28,7 +28,7 @@ def rate(case):
     ConvergenceError
         When a solver's budget is used up; says where it stopped and what to try.
     """
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    gas = mechanism(case)
     light = lamps(case)
     equipment = plant(case, gas, light)
     profile = SOLVERS[case.vessel.kind](case, equipment)  # chemistry, light and heat together
@@ -50,7 +50,8 @@ def rate(case):
         assumed=identity.assumed(case),
         deviations=identity.deviations(case),
         cautions=dangers.cautions,
-        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks),
+        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
+                 *hazard.phosgene(profile, gas)),
         sources=identity.sources(equipment, dangers.cited),
         ledger=() if typed else account.light_ledger(light, profile, case),
         streams=account.streams(profile, gas),
@@ -62,7 +63,7 @@ def rate(case):
 
 def cited(case):
     """Return what a case relies on, without solving it, and its rate constants, the most uncertain first."""
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    gas = mechanism(case)
     equipment = plant(case, gas, lamps(case))
     return identity.relied_on(equipment, hazard.citations(case, gas)), identity.rates(gas)
 
