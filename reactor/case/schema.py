@@ -221,6 +221,18 @@ class Meters:
 
 
 @dataclass(frozen=True, kw_only=True)
+class Uncertainty:
+    """[uncertainty]: factors, up or down, one standard deviation, on what a band varies; 1 holds it still."""
+
+    cross_section: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.05"))
+    lamp_output: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.1"))
+    impurity: float | None = leave(kinds.NUMBER.within(1.0, 100.0, like="1.5"))
+    wall_loss: float | None = leave(kinds.NUMBER.within(1.0, 1000.0, like="3"))
+    exchange: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.3"))
+    rates: float | None = leave(kinds.NUMBER.within(0.0, 10.0, like="1"))
+
+
+@dataclass(frozen=True, kw_only=True)
 class Solver:
     """[solver]: tolerance and time budget."""
 
@@ -242,6 +254,7 @@ class Case:
     chemistry: Chemistry = Chemistry()
     limits: Limits = Limits()
     meters: Meters = Meters()
+    uncertainty: Uncertainty = Uncertainty()
     solver: Solver = Solver()
     typed: dict[str, Any] = field(default_factory=dict)
     assumed: tuple[Assumed, ...] = ()
@@ -263,7 +276,7 @@ class Case:
 
     def hash(self):
         """Return the SHA-256 of all values in SI and of the files named; no path, no remark."""
-        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "solver")
+        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "uncertainty", "solver")
         content = {part: _plain(getattr(self, part)) for part in parts}
         content["sleeve"] = self.sleeve and asdict(self.sleeve)
         content["feed"] = {name: asdict(feed) for name, feed in self.feed.items()}

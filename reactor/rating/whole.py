@@ -7,10 +7,11 @@ from reactor.rating import account, figures, hazard, identity, judge
 from reactor.rating.bands import bands
 from reactor.rating.closures import closures
 from reactor.rating.plant import lamps, mechanism, plant
+from reactor.rating.varied import NOMINAL, equipped
 from reactor.result import Result
 
 
-def rate(case):
+def rate(case, factors=NOMINAL):
     """
     Take a checked case through the whole calculation.
 
@@ -18,6 +19,8 @@ def rate(case):
     ----------
     case : Case
         From `reactor.load`.
+    factors : Factors
+        Moves uncertain data; the band of U, a part of the uncertainty itself, is then left out.
 
     Returns
     -------
@@ -29,13 +32,13 @@ def rate(case):
         When a solver's budget is used up; says where it stopped and what to try.
     """
     gas = mechanism(case)
-    light = lamps(case)
-    equipment = plant(case, gas, light)
+    case, equipment = equipped(case, gas, factors)
+    gas, light = equipment.gas, equipment.light
     profile = SOLVERS[case.vessel.kind](case, equipment)  # chemistry, light and heat together
     feed = mixed_feed(case, gas)
     dangers = hazard.assess(case, equipment, profile, feed)
     results = figures.headline(case, equipment, profile, feed) | dangers.results
-    results = bands(case, equipment, results)
+    results = bands(case, equipment, results) if factors == NOMINAL else results
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
     gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
     verdicts = judge.verdicts(case, equipment, profile, results, gaps, dangers)

@@ -1,0 +1,1 @@
+"""Figures, drawn with Matplotlib from saved results; nothing here solves anything."""
