@@ -81,7 +81,10 @@ def severity(book, composition, T, P):
         Detonation and pressure piling are not in it. [-]
     """
     x = fractions(book, composition)
-    hot, closed = (float(substitution.adiabatic_temperature(book.rungs, x, T, volume=v)[0]) for v in (False, True))
+    hot, closed = (
+        float(substitution.adiabatic_temperature(book.rungs, x, T, volume=closed)[0])
+        for closed in (False, True)
+    )
     amounts = dict(zip(book.rungs.species, x[0], strict=True))
     known = tuple((name, round(y, 9)) for name, y in amounts.items() if y > 1e-9 and name in _names())
     if sum(y for _, y in known) < 0.999:
@@ -152,8 +155,8 @@ class _Sooty:
         solid_g = float(self.graphite.standard_gibbs_RT[0])
         moles, solid = equilibrium(self.atoms, g, solid_g, self.column, self.elements, self.last)
         self.last = moles
-        enthalpy = (moles @ self.gas.standard_enthalpies_RT + solid * self.graphite.standard_enthalpies_RT[0]) * R * T
-        return enthalpy, float(moles.sum()), solid
+        enthalpy = moles @ self.gas.standard_enthalpies_RT + solid * self.graphite.standard_enthalpies_RT[0]
+        return enthalpy * R * T, float(moles.sum()), solid
 
 
 def _with_soot(gas, amounts, T, P):
@@ -167,7 +170,7 @@ def _with_soot(gas, amounts, T, P):
 
 
 def _closed_with_soot(gas, amounts, T, P):
-    """Return temperature and pressure ratio in a closed volume with graphite, whose own volume is left out."""
+    """Return temperature and pressure ratio in a closed volume with graphite, which takes no volume."""
     from scipy.optimize import brentq
 
     gas.TPX = T, P, dict(amounts)

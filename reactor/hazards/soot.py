@@ -1,9 +1,9 @@
 """
 Gibbs equilibrium of an ideal gas with or without graphite, at given temperature and pressure.
 
-The solvers of Cantera for several phases stop on one mixture in fourteen of a random set; this is the classical
-iteration on element potentials (unknowns: one potential an element, the moles of gas, the moles of graphite),
-with the step control of chemical-equilibrium practice. Thermochemistry comes as numbers at the temperature.
+The solvers of Cantera for several phases stop on one mixture in fourteen of a random set; this is the
+classical iteration on element potentials (unknowns: one potential an element, the moles of gas, the moles of
+graphite), with the step control of chemical-equilibrium practice. Thermochemistry comes as numbers.
 """
 
 import numpy as np
@@ -115,7 +115,9 @@ def _step(change, growth, n, total):
     step = min(1.0, 2.0 / largest)
     minor = ~major & (change >= 0)
     if minor.any():
-        limit = np.abs((-np.log(n[minor] / total) - 9.2103404) / np.where(change[minor] == growth, 1e-300,
-                                                                        change[minor] - growth))
+        limit = np.abs(
+            (-np.log(n[minor] / total) - 9.2103404)
+            / np.where(change[minor] == growth, 1e-300, change[minor] - growth)
+        )
         step = min(step, limit.min())
     return step
