@@ -60,8 +60,10 @@ def trace(system, y, p, weight, direction, within, longest=0.1, points=600):
         if new is None:
             step *= 0.35
             if step < 1e-7 * longest:
-                raise ConvergenceError(f"the curve of steady states could not be followed beyond p = {p:.5g}; "
-                                       "try another range of the parameter")
+                raise ConvergenceError(
+                    f"the curve of steady states could not be followed beyond p = {p:.5g}; "
+                    "try another range of the parameter"
+                )
             continue
         y, p, rounds = new
         before, tangent = tangent, _tangent(system, y, p, weight, tangent)
@@ -119,7 +121,9 @@ def _corrected(system, y, p, weight, tangent, step, rounds=12):
         if not np.all(np.isfinite(move)):
             return None
         new, q = new + move[:-1], q + move[-1]
-        if np.sqrt(_product(move, move, weight)) < 1e-8 and np.all(np.abs(move[:-1]) < 1e-6 * np.abs(new) + 1e-14):
+        if np.sqrt(_product(move, move, weight)) < 1e-8 and np.all(
+            np.abs(move[:-1]) < 1e-6 * np.abs(new) + 1e-14
+        ):
             return new, q, number
     return None
 

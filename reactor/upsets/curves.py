@@ -1,8 +1,8 @@
 """
 Steady states of a tank against light and against feed temperature, traced through ignition and extinction.
 
-At a held temperature the composition has one solution; what is followed by arc length is the heat balance as a
-function of temperature and parameter, with the composition solved inside.
+At a held temperature the composition has one solution; what is followed by arc length is the heat balance as
+a function of temperature and parameter, with the composition solved inside.
 """
 
 from typing import NamedTuple
@@ -100,7 +100,9 @@ def _curve(name, changed, state, p, ends, shown):
 def _named(turns):
     """Name the turning points: the colder of a pair is the ignition, the hotter the extinction."""
     turns = sorted(turns, key=lambda turn: turn[1])
-    return tuple((*turn, "ignition" if number % 2 == 0 else "extinction") for number, turn in enumerate(turns))
+    return tuple(
+        (*turn, "ignition" if number % 2 == 0 else "extinction") for number, turn in enumerate(turns)
+    )
 
 
 class _Heat:
@@ -138,7 +140,7 @@ class _Heat:
 
 
 def composition(balance, T, near):
-    """Return the steady composition at a held temperature: Newton's rule from a near one, else from scratch."""
+    """Return the steady composition at a held temperature, by Newton's rule from a near one."""
     n, K = near.copy(), len(near)
     for _ in range(NEWTON):
         change, _ = balance.slope(n, T)
