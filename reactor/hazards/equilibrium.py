@@ -59,7 +59,7 @@ class Severity:
     @property
     def worst_model(self):
         """Return the model that gives the worst pressure ratio."""
-        return max(self.pressure_ratio, key=self.pressure_ratio.get)
+        return max(self.pressure_ratio, key=lambda model: self.pressure_ratio[model])
 
 
 def severity(book, composition, T, P):

@@ -1,6 +1,7 @@
 """What a deviation does to a case: feeds, lamps, heat exchange, pressure, each in one small step."""
 
 from dataclasses import dataclass, replace
+from typing import Any
 
 from reactor.models import assemble
 from reactor.rating.plant import plant
@@ -11,7 +12,7 @@ from reactor.stream import Stream
 class Changed:
     """A case with factors on its light and its heat exchange; `new_feed` tells whether other gas comes in."""
 
-    case: object
+    case: Any
     light: float = 1.0
     heat: float = 1.0
     keep_lamp_heat: bool = False
@@ -86,7 +87,7 @@ def number_of_lamps(case):
 def flows(case, gas):
     """Return (alkane and the rest, chlorine) as two mixed streams; either may be None."""
     carriers = {name for name, feed in case.feed.items() if brings_chlorine(feed)}
-    groups = ([], [])
+    groups: tuple[list, list] = ([], [])
     for stream in assemble.streams(case, gas):
         groups[stream.name in carriers].append(stream)
     return tuple(

@@ -125,8 +125,11 @@ class _Heat:
         by_p, heat_p = (up - change) / step, (hot - heat) / step
         inner = np.linalg.solve(jac[:K, :K], np.column_stack([jac[:K, K], by_p]))
         total_T, total_p = jac[K, K] - jac[K, :K] @ inner[:, 0], heat_p - jac[K, :K] @ inner[:, 1]
-        return (np.array([heat * time / SCALE]), np.array([[total_T * time]]),
-                np.array([total_p * time / SCALE]))  # fmt: skip
+        return (
+            np.array([heat * time / SCALE]),
+            np.array([[total_T * time]]),
+            np.array([total_p * time / SCALE]),
+        )
 
     def judge(self, T, p):
         """Return the slip and the stability of every state."""

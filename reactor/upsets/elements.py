@@ -96,8 +96,10 @@ class Transient(NamedTuple):
 
     def peak(self):
         """Return the hottest gas and when it occurs (K, s)."""
-        tops = [(float(t.T[t.inside()].max()), float(t.clock[t.inside()][t.T[t.inside()].argmax()]))
-                for t in (*self.old, self.new)]  # fmt: skip
+        tops = [
+            (float(t.T[t.inside()].max()), float(t.clock[t.inside()][t.T[t.inside()].argmax()]))
+            for t in (*self.old, self.new)
+        ]
         return max(tops)
 
     def held(self, t):

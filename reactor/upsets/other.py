@@ -10,7 +10,7 @@ CHLORINE, HOUR = 0.070906, 3600.0  # kg/mol, s
 RUNAWAY = 600.0  # s; a dark chain that takes longer than this counts as standing still
 
 
-class NotAssessed(Exception):
+class NotAssessedError(Exception):
     """Says why a row has no figures."""
 
 
@@ -41,9 +41,11 @@ def segregated(setting, size):
         "class": str(max(classes, key=lambda c: c.rank)),
         "chlorine_flow": sum(slips) / 2 * CHLORINE * HOUR,
         "tolerated": found.tolerated,
-        "assumptions": (f"gases that do not mix at all meet {found.line.class_} between them",
-                        "parcels do not mix along the way"),
-    }  # fmt: skip
+        "assumptions": (
+            f"gases that do not mix at all meet {found.line.class_} between them",
+            "parcels do not mix along the way",
+        ),
+    }
 
 
 def filling(setting, size):
@@ -54,8 +56,11 @@ def filling(setting, size):
     mixed = setting.mixed(setting.case)
     lines = paths.filling(setting.book, purge, alkane, mixed, chlorine, setting.case.vessel.pressure, order)
     where, worst = max(lines, key=lambda item: (item[1].class_.rank, item[1].mixture.adiabatic_temperature))
-    return {"changed": f"filled with {order.replace(' first', '')} first, purge gas {purge.name}; worst: {where}",
-            "class": str(worst.class_), "assumptions": ("compositions on straight lines between the gases",)}  # fmt: skip
+    return {
+        "changed": f"{order}, purge gas {purge.name}; worst: {where}",
+        "class": str(worst.class_),
+        "assumptions": ("compositions on straight lines between the gases",),
+    }
 
 
 def power(setting, size):
@@ -89,9 +94,11 @@ def dead_leg(setting, size):
         "peak": severity.hottest,
         "pressure_ratio": severity.ratio,
         "class": str(setting.class_between(setting.case)),
-        "assumptions": ("ignites where the wall is hotter than the light-off given; peak and pressure if it does",
-                        f"worst product model: {severity.worst_model}"),
-    }  # fmt: skip
+        "assumptions": (
+            "ignites above the wall temperature given; peak and pressure if it does",
+            f"worst product model: {severity.worst_model}",
+        ),
+    }
 
 
 OTHER = {

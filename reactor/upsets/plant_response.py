@@ -12,8 +12,8 @@ class Response(NamedTuple):
     """
     Times of the trip chain [s] and what else an upset needs; `assumed` lists what the case did not state.
 
-    `direct` sees flows, lamp current, coolant flow and pressure; `temperature` sees a thermocouple. Both end with
-    the valve closed; what is still in the line and the reactor has to be swept after that (`sweep`).
+    `direct` sees flows, lamp current, coolant flow and pressure; `temperature` sees a thermocouple. Both end
+    with the valve closed; what is still in the line and the reactor has to be swept after that.
     """
 
     temperature_detection: float
@@ -50,7 +50,8 @@ def response(case):
         if value is not None:
             return value
         datum = data[name]
-        assumed.append({"key": f"upsets.{name}", "value": f"{datum.value:g} {'m' if name == 'dead_leg' else 's'}", "why": datum.note})
+        unit = "m" if name == "dead_leg" else "s"
+        assumed.append({"key": f"upsets.{name}", "value": f"{datum.value:g} {unit}", "why": datum.note})
         cited.append(Cited(f"upset response: {name}", datum.source, datum.status))
         return datum.value
 

@@ -16,11 +16,21 @@ from reactor.upsets import changes, curves, other, regimes, rows, sensitivity
 from reactor.upsets.setting import setting
 
 HEADINGS = {
-    "light_off_temperature": "K", "dark_feed_temperature": "K", "dark_unstable_temperature": "K", "mtsr": "K",
-    "heating_rate": "K/s", "time_to_limit": "s", "direct_trip": "s", "temperature_trip": "s", "sweep": "s",
-    "chlorine_inside": "kg", "latent_heat": "J", "worst_temperature": "K", "worst_pressure_ratio": "1",
+    "light_off_temperature": "K",
+    "dark_feed_temperature": "K",
+    "dark_unstable_temperature": "K",
+    "mtsr": "K",
+    "heating_rate": "K/s",
+    "time_to_limit": "s",
+    "direct_trip": "s",
+    "temperature_trip": "s",
+    "sweep": "s",
+    "chlorine_inside": "kg",
+    "latent_heat": "J",
+    "worst_temperature": "K",
+    "worst_pressure_ratio": "1",
     "soot_share": "1",
-}  # fmt: skip
+}
 
 
 def upset(case, only=None):
@@ -50,8 +60,10 @@ def upset(case, only=None):
         "regimes": criteria(at),
         "sensitivity": sensitivities(at),
         "curves": [_curve(c) for c in steady_curves(at)],
-        "inventory": [{"section": name, "moles": quantity(n, "mol"), "mass": quantity(n * rows.CHLORINE, "kg")}
-                      for name, n in regimes.inventory(at)["sections"]],
+        "inventory": [
+            {"section": name, "moles": quantity(n, "mol"), "mass": quantity(n * rows.CHLORINE, "kg")}
+            for name, n in regimes.inventory(at)["sections"]
+        ],
         "paths": paths_met(at),
         "rows": [asdict(row) for row in table],
         "ternary": triangle(at),
@@ -60,7 +72,7 @@ def upset(case, only=None):
         "cautions": list(block(flags(table, at))),
         "sources": [c._asdict() for c in cited(at)],
         "identity": identity.identity(case, at.gas),
-    }  # fmt: skip
+    }
 
 
 def headline(at):
@@ -71,7 +83,8 @@ def headline(at):
     unstable = [state.T for state in regimes.dark_states(at) if not state.stable]
     values = {
         "light_off_temperature": at.light_off,
-        "dark_feed_temperature": None if unstable or at.case.vessel.kind == "stirred tank"
+        "dark_feed_temperature": None
+        if unstable or at.case.vessel.kind == "stirred tank"
         else regimes.no_stop_temperature(at),
         "dark_unstable_temperature": min(unstable, default=None),
         "mtsr": regimes.completion(at).mtsr,
@@ -85,22 +98,30 @@ def headline(at):
         "worst_temperature": severity.hottest,
         "worst_pressure_ratio": severity.ratio,
         "soot_share": severity.soot,
-    }  # fmt: skip
+    }
     words = {"severity": regimes.completion(at).severity, "worst_model": severity.worst_model}
     return {name: quantity(values[name], unit) for name, unit in HEADINGS.items()} | words
 
 
-UNITS = {"activation": "J/mol", "rate": "mol/m3/s", "hot_spot_limit": "K", "semenov_wall": "K",
-         "stagnant_wall": "K", "time_to_maximum_rate": "s"}  # fmt: skip
+UNITS = {
+    "activation": "J/mol",
+    "rate": "mol/m3/s",
+    "hot_spot_limit": "K",
+    "semenov_wall": "K",
+    "stagnant_wall": "K",
+    "time_to_maximum_rate": "s",
+}
 
 
 def criteria(at):
     """Return the classical criteria in each regime as quantities."""
     return {
-        regime: {name: value if isinstance(value, bool) else quantity(_finite(value), UNITS.get(name, "1"))
-                 for name, value in found.items()}
+        regime: {
+            name: value if isinstance(value, bool) else quantity(_finite(value), UNITS.get(name, "1"))
+            for name, value in found.items()
+        }
         for regime, found in regimes.criteria(at).items()
-    }  # fmt: skip
+    }
 
 
 def _finite(value):
@@ -111,8 +132,10 @@ def sensitivities(at):
     """Return how far the hottest gas moves with each input, lit and dark."""
     lit, dark = (sensitivity.sensitivity(at, dark) for dark in (False, True))
     off = {name: value for name, _, value in dark}
-    return [{"input": name, "step": step, "lit": quantity(value, "K"), "dark": quantity(off.get(name), "K")}
-            for name, step, value in lit]  # fmt: skip
+    return [
+        {"input": name, "step": step, "lit": quantity(value, "K"), "dark": quantity(off.get(name), "K")}
+        for name, step, value in lit
+    ]
 
 
 def steady_curves(at):
@@ -129,18 +152,30 @@ def steady_curves(at):
 
 
 def _curve(curve):
-    return {"parameter": curve.parameter, "value": curve.value.tolist(), "temperature": curve.temperature.tolist(),
-            "slip": curve.slip.tolist(), "stable": [bool(s) for s in curve.stable],
-            "turns": [list(turn) for turn in curve.turns]}  # fmt: skip
+    return {
+        "parameter": curve.parameter,
+        "value": curve.value.tolist(),
+        "temperature": curve.temperature.tolist(),
+        "slip": curve.slip.tolist(),
+        "stable": [bool(s) for s in curve.stable],
+        "turns": [list(turn) for turn in curve.turns],
+    }
 
 
 def paths_met(at):
-    """Return mixing at the inlet, the chlorine valve wide open, and the filling paths, each with its class."""
+    """Return the class of bad mixing, of the chlorine valve wide open, and of the filling paths."""
     alkane, chlorine = changes.flows(at.case, at.gas)
     P = at.case.vessel.pressure
     met = other.paths.segregation(at.book, alkane, chlorine, P)
-    found = [{"where": "inlet, not mixed at all", "class": str(met.line.class_), "at": met.line.at,
-              "tolerated": quantity(met.tolerated, "1"), "mean": str(met.mean)}]  # fmt: skip
+    found = [
+        {
+            "where": "inlet, not mixed at all",
+            "class": str(met.line.class_),
+            "at": met.line.at,
+            "tolerated": quantity(met.tolerated, "1"),
+            "mean": str(met.mean),
+        }
+    ]
     factor = at.times.chlorine_wide_open
     if factor is not None:
         wide = at.mixed(changes.scaled_feeds(at.case, factor, changes.brings_chlorine))
@@ -154,16 +189,24 @@ def filling_lines(at):
     """Return the filling paths of the case."""
     alkane, chlorine = changes.flows(at.case, at.gas)
     purge = changes.purge(at.case, at.gas, at.times.purge_gas)
-    return other.paths.filling(at.book, purge, alkane, at.mixed(at.case), chlorine, at.case.vessel.pressure,
-                               at.times.filling)  # fmt: skip
+    return other.paths.filling(
+        at.book, purge, alkane, at.mixed(at.case), chlorine, at.case.vessel.pressure, at.times.filling
+    )
 
 
 def triangle(at):
     """Return the data of the triangle of fuel, chlorine and inert gas."""
     case, gas = at.case, at.gas
     corner = hazard.corner(case, gas, at.book, assemble.at_inlet(case, gas), case.vessel.pressure)
-    found = ternary(at.book, at.mixed(case).moles, at.feed.temperature, case.vessel.pressure,
-                    corners_of(at) if corner is not None else (), at.profile.moles, filling_lines(at))  # fmt: skip
+    found = ternary(
+        at.book,
+        at.mixed(case).moles,
+        at.feed.temperature,
+        case.vessel.pressure,
+        corners_of(at) if corner is not None else (),
+        at.profile.moles,
+        filling_lines(at),
+    )
     return found
 
 
@@ -171,12 +214,15 @@ def corners_of(at):
     """Return the compositions at the corners of the two meter errors."""
     meters = at.case.meters
     alkane, chlorine = changes.flows(at.case, at.gas)
-    return [(1 + a * meters.alkane) * alkane.moles + (1 + c * meters.chlorine) * chlorine.moles
-            for a in (-1, 1) for c in (-1, 1)]  # fmt: skip
+    return [
+        (1 + a * meters.alkane) * alkane.moles + (1 + c * meters.chlorine) * chlorine.moles
+        for a in (-1, 1)
+        for c in (-1, 1)
+    ]
 
 
 def leaks(at):
-    """Return the exposure figures of what could leak, and how far the outlet gas has to be diluted to each."""
+    """Return the exposure figures of what could leak, and how far the gas has to be diluted to each."""
     share = at.profile.outlet.fractions
     feeds = at.feed.fractions
     found = []
@@ -201,8 +247,13 @@ def leaks(at):
 def flags(table, at):
     """Return the cautions that the table calls for."""
     classes = {row.class_reached for row in table}
-    found = {"unknown_class": "UNKNOWN" in classes, "inside": "INSIDE" in classes, "restrike": bool(at.case.lamp),
-             "glass": bool(at.case.lamp), "steel": "steel" in at.case.vessel.shell_material}  # fmt: skip
+    found = {
+        "unknown_class": "UNKNOWN" in classes,
+        "inside": "INSIDE" in classes,
+        "restrike": bool(at.case.lamp),
+        "glass": bool(at.case.lamp),
+        "steel": "steel" in at.case.vessel.shell_material,
+    }
     return [name for name, present in found.items() if present]
 
 
@@ -210,6 +261,14 @@ def cited(at):
     """Return what the upsets rely on."""
     more = library.table("hazards/deviations.csv").cited("sizes of the deviations")
     mixture = explosive.classify(at.book, at.feed.moles, at.feed.temperature, at.feed.pressure)
-    found = (*at.plant.gas.cited, *at.plant.light.cited, *at.plant.wall.cited, *mixture.cited, *dewpoint.cited(),
-             *equilibrium.CITED, *at.times.cited, *more)  # fmt: skip
+    found = (
+        *at.plant.gas.cited,
+        *at.plant.light.cited,
+        *at.plant.wall.cited,
+        *mixture.cited,
+        *dewpoint.cited(),
+        *equilibrium.CITED,
+        *at.times.cited,
+        *more,
+    )
     return tuple(dict.fromkeys(found))

@@ -1,6 +1,4 @@
-"""
-Lit and dark: the criteria of runaway in both regimes, the temperature above which lamp-off is no stop, trip times.
-"""
+"""Lit and dark: criteria of runaway in both, where lamp-off is no stop, trip times, chlorine inside."""
 
 from dataclasses import replace
 
@@ -25,8 +23,8 @@ class Chain:
     """
     The chain of the mechanism in unreacted feed, radicals at rest: with the light of the inlet, or dark.
 
-    Serves the criteria of `reactor.hazards.runaway`; the dark one counts every termination, so that it is slower
-    than the upper bound of `exotherm.DarkChain`.
+    Serves the criteria of `reactor.hazards.runaway`; the dark one counts every termination, so that it is
+    slower than the upper bound of `exotherm.DarkChain`.
     """
 
     def __init__(self, gas, feed, heat, beam, wall_loss):
@@ -89,8 +87,14 @@ def upper_bound(setting):
 
 def chain_of(setting, light):
     """Return the chain of the mechanism in a setting's unreacted feed, lit or dark."""
-    beam = next((s.beam for s in sections(setting.case, setting.gas, setting.light)
-                 if s.beam.fixed is not None or s.beam.entering.any()), None)  # fmt: skip
+    beam = next(
+        (
+            s.beam
+            for s in sections(setting.case, setting.gas, setting.light)
+            if s.beam.fixed is not None or s.beam.entering.any()
+        ),
+        None,
+    )
     return Chain(setting.gas, setting.feed, setting.heat, beam if light else None, setting.plant.wall_loss)
 
 
@@ -121,8 +125,8 @@ def criteria(setting):
     """
     Return every classical criterion at the wall temperature of the case, in three regimes.
 
-    `lit` and `dark` are the chain of the mechanism; `dark, upper bound` counts no termination, which is what a
-    screening should look at.
+    `lit` and `dark` are the chain of the mechanism; `dark, upper bound` counts no termination, which is what
+    a screening should look at.
     """
     case, profile = setting.case, setting.profile
     wall = case.cooling.inlet or setting.feed.temperature
@@ -137,24 +141,29 @@ def criteria(setting):
     for name, chain in chains.items():
         E = chain.activation(wall)
         S, N = runaway.tube_numbers(chain, wall, rise, cooling)
-        semenov = runaway.critical_wall(lambda T, c=chain: runaway.semenov(c, T, max(cooling, 1e-9)), runaway.SEMENOV,
-                                        250.0)  # fmt: skip
+        semenov = runaway.critical_wall(
+            lambda T, c=chain: runaway.semenov(c, T, max(cooling, 1e-9)), runaway.SEMENOV, 250.0
+        )
         found[name] = {
-            "activation": E, "rate": chain.rate(wall), "S": S, "N_over_S": N / S if S > 0 else None,
+            "activation": E,
+            "rate": chain.rate(wall),
+            "S": S,
+            "N_over_S": N / S if S > 0 else None,
             "critical_N_over_S": runaway.van_welsenaere_froment(S) if S > 0 else None,
             "barkelew_N_over_S": runaway.barkelew(S) if S > 10 else None,
             "hot_spot_limit": runaway.hot_spot_limit(wall, E) if E > 0 else None,
-            "semenov": runaway.semenov(chain, wall, max(cooling, 1e-9)), "semenov_wall": semenov,
+            "semenov": runaway.semenov(chain, wall, max(cooling, 1e-9)),
+            "semenov_wall": semenov,
             "stagnant_wall": stagnant_wall(setting, setting.times.dead_leg, chain),
             "time_to_maximum_rate": chain.time_to_maximum_rate(profile.hottest[0]),
             "several_states": runaway.several_states(rise, setting.feed.temperature, E),
-        }  # fmt: skip
+        }
     return found
 
 
 def no_stop_temperature(setting, hottest=900.0):
     """
-    Return the feed temperature at which the dark reactor uses half its chlorine within its residence time [K].
+    Return the feed temperature at which the dark reactor uses half its chlorine [K].
 
     Above it lamp-off is no stop. The wall is as in the case; None if even `hottest` does not light off.
     """

@@ -1,23 +1,24 @@
 """
 The upset table: one row for each deviation of data/hazards/deviations.csv.
 
-A row says what was changed, when the temperature limit is reached, how hot the gas gets, which class of mixture is
-met, how much chlorine leaves unreacted, how much heat stays stored in unreacted chlorine, and which trip acts in
-time. What the model cannot say is NOT ASSESSED with its reason.
+A row says what was changed, when the temperature limit is reached, how hot the gas gets, which class of
+mixture is met, how much chlorine leaves unreacted before a direct trip has shut the valve and the reactor is
+swept, how much heat stays stored in unreacted chlorine, and which trip acts in time. What the model cannot say
+is NOT ASSESSED with its reason.
 """
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 
 import numpy as np
 
 from reactor import library
 from reactor.errors import ReactorError
-from reactor.hazards import explosive, paths
+from reactor.hazards import explosive
 from reactor.hazards.explosive import ORDER, Class
 from reactor.result import quantity
 from reactor.upsets import changes
 from reactor.upsets.changes import Changed, brings_chlorine
-from reactor.upsets.other import OTHER, NotAssessed
+from reactor.upsets.other import OTHER, NotAssessedError
 
 COMPUTED, NOT_ASSESSED = "computed", "NOT ASSESSED"
 HOUR = 3600.0
@@ -71,27 +72,53 @@ def row(setting, entry):
     size = float(entry["size"])
     try:
         if entry["change"] == "none":
-            raise NotAssessed(entry["note"])
+            raise NotAssessedError(entry["note"])
         made = OTHER.get(entry["change"])
         found = made(setting, size) if made else _followed(setting, entry["change"], size)
-    except NotAssessed as reason:
+    except NotAssessedError as reason:
         return _shell(entry, NOT_ASSESSED, changed="", why=str(reason))
     except ReactorError as reason:
         return _shell(entry, NOT_ASSESSED, changed="", why=f"the run did not succeed: {reason}")
     notes = tuple(text for text in (entry["note"], *found.pop("assumptions", ())) if text)
     acts = acting(setting, found.get("time_to_limit"), entry["trip"])
-    return _shell(entry, COMPUTED, changed=found.pop("changed"), class_reached=found.pop("class", ""),
-                  results=_quantities(found), acts=acts, assumptions=notes)  # fmt: skip
+    return _shell(
+        entry,
+        COMPUTED,
+        changed=found.pop("changed"),
+        class_reached=found.pop("class", ""),
+        results=_quantities(found),
+        acts=acts,
+        assumptions=notes,
+    )
 
 
 def _shell(entry, assessed, **more):
-    return Row(entry["id"], entry["guideword"], entry["parameter"], assessed=assessed, safeguards=entry["safeguard"],
-               cause=entry["cause"], consequence=entry["consequence"], **more)  # fmt: skip
+    return Row(
+        entry["id"],
+        entry["guideword"],
+        entry["parameter"],
+        assessed=assessed,
+        safeguards=entry["safeguard"],
+        cause=entry["cause"],
+        consequence=entry["consequence"],
+        **more,
+    )
 
 
-UNITS = {"time_to_limit": "s", "time_of_peak": "s", "peak": "K", "chlorine_released": "kg", "chlorine_flow": "kg/h",
-         "naoh": "kg/h", "latent_heat": "J", "dew_margin": "K", "duty": "1", "pressure_ratio": "1",
-         "light_off": "K", "tolerated": "1"}  # fmt: skip
+UNITS = {
+    "time_to_limit": "s",
+    "time_of_peak": "s",
+    "peak": "K",
+    "chlorine_released": "kg",
+    "chlorine_flow": "kg/h",
+    "naoh": "kg/h",
+    "latent_heat": "J",
+    "dew_margin": "K",
+    "duty": "1",
+    "pressure_ratio": "1",
+    "light_off": "K",
+    "tolerated": "1",
+}
 
 
 def _quantities(found):
@@ -182,7 +209,7 @@ def _special(setting, change, changed, transient):
 
 
 def _duty(setting, transient):
-    """Return the highest rate at which chlorine is used, over the steady one, in twentieths of the residence."""
+    """Return the highest rate of chlorine use over the steady one, in twentieths of the residence."""
     times = np.linspace(0.0, setting.profile.total("time"), 21)
     fed = setting.feed.moles[setting.chlorine]
     left = [float((transient.held(t) + transient.released(t))[setting.chlorine]) - fed * t for t in times]
@@ -200,7 +227,7 @@ def _chlorine_flow(setting, size, words=None):
 def _chlorine_open(setting, size):
     factor = setting.times.chlorine_wide_open
     if factor is None:
-        raise NotAssessed(
+        raise NotAssessedError(
             "upsets.chlorine_wide_open is not stated: flow through the open valve over the normal flow"
         )
     return _chlorine_flow(setting, factor, f"chlorine valve wide open: feed x {factor:g}")
@@ -229,7 +256,7 @@ def _lamp_lost(setting, size):
         share = 1 - 1 / number
         notes = ("the loss is spread over the lit length",)
         return Changed(setting.case, light=share), f"1 of {number} lamps of every vessel off", notes, None
-    raise NotAssessed(
+    raise NotAssessedError(
         "one lamp in each vessel: see lamps off; with several vessels in parallel one of them is dark"
     )
 
@@ -245,14 +272,14 @@ def _restrike(setting, size):
 
 def _heat(setting, size):
     if setting.case.cooling.mode == "none":
-        raise NotAssessed("the case has no coolant")
+        raise NotAssessedError("the case has no coolant")
     words = "heat exchange lost" if size == 0 else f"heat exchange x {size:g}"
     return Changed(setting.case, heat=size), words, (), None
 
 
 def _coolant_step(setting, size):
     if setting.case.cooling.mode == "none":
-        raise NotAssessed("the case has no coolant")
+        raise NotAssessedError("the case has no coolant")
     return Changed(changes.warmer_coolant(setting.case, size)), f"coolant {size:+g} K", (), None
 
 
@@ -271,7 +298,16 @@ def _oxygen(setting, size):
 
 
 CHANGES = {
-    "chlorine_flow": _chlorine_flow, "chlorine_open": _chlorine_open, "alkane_flow": _alkane_flow,
-    "all_flow": _all_flow, "lamp": _lamp, "lamp_lost": _lamp_lost, "restrike": _restrike, "heat": _heat,
-    "coolant_step": _coolant_step, "inlet_step": _inlet_step, "pressure": _pressure, "oxygen": _oxygen,
-}  # fmt: skip
+    "chlorine_flow": _chlorine_flow,
+    "chlorine_open": _chlorine_open,
+    "alkane_flow": _alkane_flow,
+    "all_flow": _all_flow,
+    "lamp": _lamp,
+    "lamp_lost": _lamp_lost,
+    "restrike": _restrike,
+    "heat": _heat,
+    "coolant_step": _coolant_step,
+    "inlet_step": _inlet_step,
+    "pressure": _pressure,
+    "oxygen": _oxygen,
+}

@@ -32,7 +32,7 @@ INPUTS = (
 
 def sensitivity(setting, dark=False):
     """
-    Return, for every input, the change of the hottest gas by one of its unit, from a run with that input raised a little.
+    Return how far the hottest gas moves with each input, from a run with that input raised a little.
 
     Parameters
     ----------

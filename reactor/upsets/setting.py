@@ -1,6 +1,7 @@
 """What every row of an upset table starts from: the rated case, its steady state, its rules, its limits."""
 
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 
@@ -9,7 +10,7 @@ from reactor.hazards import dewpoint, equilibrium, paths
 from reactor.models import SOLVERS, assemble
 from reactor.rating import hazard
 from reactor.rating.plant import lamps, plant
-from reactor.upsets import changes, elements, vessel
+from reactor.upsets import elements, vessel
 from reactor.upsets.plant_response import Response, response
 
 LOOSE = 1e-6  # relative tolerance of the runs behind a table
@@ -17,15 +18,15 @@ LOOSE = 1e-6  # relative tolerance of the runs behind a table
 
 @dataclass(frozen=True)
 class Setting:
-    """A rated case ready to be upset: `case` with a looser tolerance, its plant, its steady profile, its rules."""
+    """A rated case ready to be upset: at a looser tolerance, with plant, steady profile and rules."""
 
-    case: object
-    gas: object
-    light: object
-    plant: object
-    profile: object
-    feed: object
-    book: object
+    case: Any
+    gas: Any
+    light: Any
+    plant: Any
+    profile: Any
+    feed: Any
+    book: Any
     times: Response
     heat: float  # released by a mole of chlorine [J/mol]
     light_off: float | None
@@ -92,5 +93,15 @@ def setting(case):
     feed = assemble.mixed_feed(case, gas)
     used = profile.fed[gas.index["Cl2"]] - profile.outlet.moles[gas.index["Cl2"]]
     heat = profile.total("heat_reaction") / used if used > 1e-9 * feed.total else float("nan")
-    return Setting(case, gas, light, equipment, profile, feed, hazard.rulebook(case, gas), response(case), heat,
-                   hazard.light_off_temperature(profile, gas, feed))  # fmt: skip
+    return Setting(
+        case,
+        gas,
+        light,
+        equipment,
+        profile,
+        feed,
+        hazard.rulebook(case, gas),
+        response(case),
+        heat,
+        hazard.light_off_temperature(profile, gas, feed),
+    )

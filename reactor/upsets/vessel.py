@@ -14,8 +14,10 @@ RESIDENCES = 30
 
 class Transient(NamedTuple):
     """
-    A tank after a step at time zero: times [s], moles per kilogram (M, K), temperature [K], mass of gas [kg],
-    outflow [kg/s] of one tank; `feed` [mol/s] of all.
+    A tank after a step at time zero.
+
+    Times [s], moles per kilogram (M, K), temperature [K], mass of gas [kg] and outflow [kg/s] of one tank;
+    `feed` [mol/s] of all.
     """
 
     clock: np.ndarray

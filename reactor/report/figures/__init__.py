@@ -1,0 +1,1 @@
+"""Figures from plain records: each takes its data and an Axes, and returns the Axes."""
