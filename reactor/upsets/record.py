@@ -5,6 +5,7 @@ from dataclasses import asdict
 import numpy as np
 
 from reactor import library
+from reactor.errors import CaseError
 from reactor.hazards import dewpoint, equilibrium, explosive, materials
 from reactor.hazards.cautions import block
 from reactor.hazards.ternary import ternary
@@ -16,6 +17,7 @@ from reactor.upsets import changes, curves, other, regimes, rows, sensitivity
 from reactor.upsets.setting import setting
 
 HEADINGS = {
+    "hottest": "K",
     "light_off_temperature": "K",
     "dark_feed_temperature": "K",
     "dark_unstable_temperature": "K",
@@ -33,7 +35,7 @@ HEADINGS = {
 }
 
 
-def upset(case, only=None):
+def upset(case, only=None, strict=False):
     """
     Put a checked case through its upsets.
 
@@ -43,6 +45,8 @@ def upset(case, only=None):
         From `reactor.load`.
     only : collection of str
         Numbers of the deviations wanted, such as `U09`; all without it.
+    strict : bool
+        Refuse the defaults of [upsets].
 
     Returns
     -------
@@ -51,6 +55,18 @@ def upset(case, only=None):
         ternary, leaks, assumed, cautions, sources, identity.
     """
     at = setting(case)
+    if strict and at.times.assumed:
+        raise CaseError(
+            [
+                f"{a['key']}: missing; strict reading takes no default ({a['value']}: {a['why']})"
+                for a in at.times.assumed
+            ]
+        )
+    known = {row["id"] for row in library.table("hazards/deviations.csv").rows}
+    if only is not None and not set(only) <= known:
+        raise CaseError(
+            f"no deviation {', '.join(sorted(set(only) - known))}; known: {', '.join(sorted(known))}"
+        )
     table = rows.table(at, only)
     return {
         "title": case.title,
@@ -87,6 +103,7 @@ def headline(at):
         if unstable or at.case.vessel.kind == "stirred tank"
         else regimes.no_stop_temperature(at),
         "dark_unstable_temperature": min(unstable, default=None),
+        "hottest": at.profile.hottest[0],
         "mtsr": regimes.completion(at).mtsr,
         "heating_rate": rate,
         "time_to_limit": margin,

@@ -3,8 +3,8 @@ The upset table: one row for each deviation of data/hazards/deviations.csv.
 
 A row says what was changed, when the temperature limit is reached, how hot the gas gets, which class of
 mixture is met, how much chlorine leaves unreacted before a direct trip has shut the valve and the reactor is
-swept, how much heat stays stored in unreacted chlorine, and which trip acts in time. What the model cannot say
-is NOT ASSESSED with its reason.
+swept, how much heat stays stored in unreacted chlorine, and which trip acts in time. What the model cannot
+say is NOT ASSESSED with its reason.
 """
 
 from dataclasses import dataclass, field
@@ -181,7 +181,7 @@ def _hot(peak, setting):
     """Return the sentences that a hot row needs."""
     if peak > PYROLYSIS:
         yield f"peak beyond the data ({PYROLYSIS - 273.15:.0f} degC): no pyrolysis in the mechanism"
-    if setting.light_off is not None and peak > setting.light_off:
+    if setting.light_off is not None and setting.profile.hottest[0] <= setting.light_off < peak:
         yield "hotter than the screening light-off of the dark chain: lamp-off alone may not stop it"
 
 
