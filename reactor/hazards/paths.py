@@ -38,7 +38,7 @@ class Line:
     rank: np.ndarray
 
 
-def line(book, start, stop, P, through=None):
+def line(book, start, stop, P):
     """
     Classify everything between two streams, mixed at constant enthalpy and unreacted.
 
@@ -50,8 +50,6 @@ def line(book, start, stop, P, through=None):
         The two gases; only their composition and temperature count. [-]
     P : float
         Absolute pressure. [Pa]
-    through : float
-        A share of the second stream that must be among the points; the line is halved there. [-]
 
     Returns
     -------
@@ -59,16 +57,7 @@ def line(book, start, stop, P, through=None):
         The worst class between them, both ends included. [-]
     """
     share = np.linspace(0.0, 1.0, POINTS)
-    if through is not None:
-        half = POINTS // 2
-        share = np.append(
-            np.linspace(0.0, through, half, endpoint=False), np.linspace(through, 1.0, half + 1)
-        )
-    ends = np.vstack([fractions(book, stream.moles) for stream in (start, stop)])
-    x = (1 - share)[:, None] * ends[0] + share[:, None] * ends[1]
-    heat = mixture_enthalpy(book.rungs, ends, np.array([start.temperature, stop.temperature]))
-    T = temperature_of(book.rungs.grid, x @ book.rungs.enthalpy.T, (1 - share) * heat[0] + share * heat[1])
-    found = find(book, x, T, np.full(POINTS, float(P)), T, premixed=True)
+    x, T, found = _found(book, start, stop, P, share)
     rank = found.rank
     worst = int(np.lexsort((found.T_ad, rank))[-1])
     inside = share[rank == Class.INSIDE.rank]
@@ -83,6 +72,15 @@ def line(book, start, stop, P, through=None):
         (float(inside.min()), float(inside.max())) if len(inside) else None,
         share, fuel, chlorine, 1 - fuel - chlorine, rank,
     )  # fmt: skip
+
+
+def _found(book, start, stop, P, share):
+    """Return mole fractions, temperatures and findings at shares of the second stream."""
+    ends = np.vstack([fractions(book, stream.moles) for stream in (start, stop)])
+    x = (1 - share)[:, None] * ends[0] + share[:, None] * ends[1]
+    heat = mixture_enthalpy(book.rungs, ends, np.array([start.temperature, stop.temperature]))
+    T = temperature_of(book.rungs.grid, x @ book.rungs.enthalpy.T, (1 - share) * heat[0] + share * heat[1])
+    return x, T, find(book, x, T, np.full(len(share), float(P)), T, premixed=True)
 
 
 @dataclass(frozen=True)
@@ -120,11 +118,23 @@ def segregation(book, fuel, chlorine, P):
         The line between the two, the class of the mean, and the intensity tolerated. [-]
     """
     mean = mean_share(fuel, chlorine)
-    met = line(book, fuel, chlorine, P, through=mean)
-    rank = int(met.rank[int(np.argmin(np.abs(met.share - mean)))])
-    worse = met.share[met.rank > rank]
-    distance = np.where(worse > mean, (worse - mean) / (1 - mean), (mean - worse) / mean)
-    return Segregation(met, ORDER[rank], float(distance.min()) if len(worse) else float("nan"))
+    rank = int(_found(book, fuel, chlorine, P, np.array([mean]))[2].rank[0])
+    sides = [_worsens(book, fuel, chlorine, P, mean, stop, rank) for stop in (0.0, 1.0)]
+    tolerated = min((s for s in sides if s is not None), default=float("nan"))
+    return Segregation(line(book, fuel, chlorine, P), ORDER[rank], tolerated)
+
+
+def _worsens(book, fuel, chlorine, P, mean, stop, rank):
+    """Return the intensity at which a parcel on its way to one of the streams first worsens, else None."""
+    low, high = 0.0, 1.0
+    for points in (POINTS, 41, 41):
+        intensity = np.linspace(low, high, points)
+        ranks = _found(book, fuel, chlorine, P, mean + intensity * (stop - mean))[2].rank
+        if not (ranks > rank).any():
+            return None
+        first = int(np.argmax(ranks > rank))
+        low, high = float(intensity[max(first - 1, 0)]), float(intensity[first])
+    return high
 
 
 def mean_share(one, two):

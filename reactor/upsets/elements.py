@@ -221,7 +221,7 @@ def transient(case, plant, old, after, gas):
 
 def _pushed(old, new, flow, volume):
     """Return old elements with the time at which their middle has been pushed to the outlet."""
-    times = np.linspace(0.0, 3.0 * max(new.leaves, max(e.leaves for e in old)), 400)
+    times = np.linspace(0.0, 3.0 * max(new.leaves, max(e.leaves for e in old)), 1500)
     fresh = R * new.T * new.n.sum(axis=1) / new.P
     behind = flow * np.array([np.trapezoid(*_until(fresh, new.clock, t)) for t in times])
     for element in old:
