@@ -208,11 +208,11 @@ def leaks(record, emphasis):
     """Give, for each toxic substance, how far a leak has to be diluted."""
     worst: dict = {}
     for leak in record["leaks"]:
-        if leak["figure"] == "IDLH":
+        if leak["figure"] in ("IDLH", "lower limit in air"):
             worst[leak["substance"]] = leak
     rows = []
     for name, leak in worst.items():
-        label = f"{name}: IDLH {figure(1e6 * leak['fraction'])} ppm"
+        label = f"{name}: {leak['figure']} {figure(1e6 * leak['fraction'])} ppm"
         rows.append(line(label, f"{leak['times']:.0f} times in the gas", leak["status"]))
     return section("WHAT COULD LEAK", rows, emphasis)
 

@@ -258,6 +258,11 @@ def leaks(at):
                     "status": entry.cited.status,
                 }
             )
+    gas = dict(zip(at.gas.species, share, strict=True))
+    lower, fuel = materials.leak_limit(gas)
+    if fuel > lower:
+        found.append({"substance": "fuel", "figure": "lower limit in air", "fraction": lower, "basis": "1 atm",
+                      "times": fuel / lower, "status": "seen"})
     return found
 
 
