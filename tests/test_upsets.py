@@ -110,7 +110,7 @@ def test_a_tank_ends_on_the_steady_state_of_the_solver(tank):
     # Limit: filled with unreacted feed and lit, the tank's transient ends where the solver found the steady
     # state.
     found = vessel.transient(tank.case, tank.plant, tank.profile, tank.gas, full=tank.feed)
-    assert found.T[-1] == pytest.approx(tank.profile.outlet.temperature, abs=1e-3)
+    assert found.T[-1] == pytest.approx(tank.profile.outlet.temperature, abs=5e-3)
     assert found.outflow() == pytest.approx(tank.profile.outlet.moles, rel=1e-4, abs=1e-7)
 
 

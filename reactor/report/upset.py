@@ -125,7 +125,8 @@ def regimes(record, emphasis):
     rows.append(
         paragraph(
             "Screening values; dark, bound: chlorine atoms in equilibrium, no termination. With light the "
-            "rate hardly depends on temperature: the criteria then only say that the wall cannot hold the rise."
+            "rate hardly depends on temperature: the criteria then only say that the wall cannot hold the "
+            "rise."
         )
     )
     return section("RUNAWAY, LIT AND DARK", rows, emphasis)
@@ -144,7 +145,8 @@ def sensitivity(record, emphasis):
     """Give how far the hottest gas moves with each input."""
     rows = [f"{'hottest gas moves, in K':<34}{'lit':>12}{'dark':>12}"]
     for r in record["sensitivity"]:
-        cells = ["-" if r[k]["value"] is None else figure(round(r[k]["value"], 6), 3) for k in ("lit", "dark")]
+        values = [r[name]["value"] for name in ("lit", "dark")]
+        cells = ["-" if v is None else figure(round(v, 6), 3) for v in values]
         rows.append(f"{r['input'] + ' + ' + r['step']:<34}{cells[0]:>12}{cells[1]:>12}")
     return section("PARAMETRIC SENSITIVITY", rows, emphasis)
 

@@ -3,9 +3,7 @@
 from dataclasses import dataclass, replace
 from typing import Any
 
-from reactor.models import assemble
 from reactor.rating.plant import plant
-from reactor.stream import Stream
 
 
 @dataclass(frozen=True)
@@ -82,25 +80,3 @@ def at_pressure(case, factor):
 def number_of_lamps(case):
     """Return how many lamps one vessel has."""
     return sum(lamp.number for lamp in case.lamp)
-
-
-def flows(case, gas):
-    """Return (alkane and the rest, chlorine) as two mixed streams; either may be None."""
-    carriers = {name for name, feed in case.feed.items() if brings_chlorine(feed)}
-    groups: tuple[list, list] = ([], [])
-    for stream in assemble.streams(case, gas):
-        groups[stream.name in carriers].append(stream)
-    return tuple(
-        assemble.mix(name, group, gas, case.vessel.pressure)
-        if group and sum(s.total for s in group) > 0
-        else None
-        for name, group in zip(("alkane", "chlorine"), groups, strict=True)
-    )
-
-
-def purge(case, gas, species):
-    """Return the purge gas as a stream at the temperature of the alkane."""
-    moles = gas.enthalpy(300.0) * 0.0
-    moles[gas.index[species]] = 1.0
-    warm = min(feed.temperature for feed in case.feed.values())
-    return Stream(species, moles, warm, case.vessel.pressure)

@@ -3,6 +3,7 @@
 import numpy as np
 
 from reactor.hazards import explosive, paths
+from reactor.rating import surroundings
 from reactor.upsets import changes, regimes
 from reactor.upsets.changes import Changed, brings_chlorine
 
@@ -33,7 +34,7 @@ def segregated(setting, size):
         tops.append(profile.hottest[0])
         classes.append(setting.class_between(case))
         slips.append(float(profile.outlet.moles[setting.chlorine]))
-    alkane, chlorine = changes.flows(setting.case, setting.gas)
+    alkane, chlorine = surroundings.flows(setting.case, setting.gas)
     found = paths.segregation(setting.book, alkane, chlorine, setting.case.vessel.pressure)
     return {
         "changed": f"two parcels, chlorine {100 * (1 + size):.0f} and {100 * (1 - size):.0f} %",
@@ -50,14 +51,11 @@ def segregated(setting, size):
 
 def filling(setting, size):
     """Return the worst class on the way from purge gas to feed and back; size 1 takes the chlorine first."""
-    alkane, chlorine = changes.flows(setting.case, setting.gas)
-    purge = changes.purge(setting.case, setting.gas, setting.times.purge_gas)
     order = "chlorine first" if size else setting.times.filling
-    mixed = setting.mixed(setting.case)
-    lines = paths.filling(setting.book, purge, alkane, mixed, chlorine, setting.case.vessel.pressure, order)
+    lines = surroundings.filling(setting.case, setting.gas, setting.book, order)
     where, worst = max(lines, key=lambda item: (item[1].class_.rank, item[1].mixture.adiabatic_temperature))
     return {
-        "changed": f"{order}, purge gas {purge.name}; worst: {where}",
+        "changed": f"{order}, purge gas {setting.times.purge_gas}; worst: {where}",
         "class": str(worst.class_),
         "assumptions": ("compositions on straight lines between the gases",),
     }

@@ -11,9 +11,9 @@ from reactor.hazards.cautions import block
 from reactor.hazards.ternary import ternary
 from reactor.models import assemble
 from reactor.models.stirred_tank import tank_of
-from reactor.rating import hazard, identity
+from reactor.rating import hazard, identity, surroundings
 from reactor.result import quantity
-from reactor.upsets import changes, curves, other, regimes, rows, sensitivity
+from reactor.upsets import curves, regimes, rows, sensitivity
 from reactor.upsets.setting import setting
 
 HEADINGS = {
@@ -80,7 +80,7 @@ def upset(case, only=None, strict=False):
             {"section": name, "moles": quantity(n, "mol"), "mass": quantity(n * rows.CHLORINE, "kg")}
             for name, n in regimes.inventory(at)["sections"]
         ],
-        "paths": paths_met(at),
+        "paths": surroundings.met(at.case, at.gas, at.book),
         "rows": [asdict(row) for row in table],
         "ternary": triangle(at),
         "leaks": leaks(at),
@@ -179,38 +179,6 @@ def _curve(curve):
     }
 
 
-def paths_met(at):
-    """Return the class of bad mixing, of the chlorine valve wide open, and of the filling paths."""
-    alkane, chlorine = changes.flows(at.case, at.gas)
-    P = at.case.vessel.pressure
-    met = other.paths.segregation(at.book, alkane, chlorine, P)
-    found = [
-        {
-            "where": "inlet, not mixed at all",
-            "class": str(met.line.class_),
-            "at": met.line.at,
-            "tolerated": quantity(met.tolerated, "1"),
-            "mean": str(met.mean),
-        }
-    ]
-    factor = at.times.chlorine_wide_open
-    if factor is not None:
-        wide = at.mixed(changes.scaled_feeds(at.case, factor, changes.brings_chlorine))
-        class_ = explosive.classify(at.book, wide.moles, wide.temperature, P).class_
-        found.append({"where": f"inlet, chlorine valve wide open (x {factor:g})", "class": str(class_)})
-    found += [{"where": words, "class": str(line.class_), "at": line.at} for words, line in filling_lines(at)]
-    return found
-
-
-def filling_lines(at):
-    """Return the filling paths of the case."""
-    alkane, chlorine = changes.flows(at.case, at.gas)
-    purge = changes.purge(at.case, at.gas, at.times.purge_gas)
-    return other.paths.filling(
-        at.book, purge, alkane, at.mixed(at.case), chlorine, at.case.vessel.pressure, at.times.filling
-    )
-
-
 def triangle(at):
     """Return the data of the triangle of fuel, chlorine and inert gas."""
     case, gas = at.case, at.gas
@@ -222,7 +190,7 @@ def triangle(at):
         case.vessel.pressure,
         corners_of(at) if corner is not None else (),
         at.profile.moles,
-        filling_lines(at),
+        surroundings.filling(case, gas, at.book),
     )
     return found
 
@@ -230,7 +198,7 @@ def triangle(at):
 def corners_of(at):
     """Return the compositions at the corners of the two meter errors."""
     meters = at.case.meters
-    alkane, chlorine = changes.flows(at.case, at.gas)
+    alkane, chlorine = surroundings.flows(at.case, at.gas)
     return [
         (1 + a * meters.alkane) * alkane.moles + (1 + c * meters.chlorine) * chlorine.moles
         for a in (-1, 1)
@@ -261,8 +229,16 @@ def leaks(at):
     gas = dict(zip(at.gas.species, share, strict=True))
     lower, fuel = materials.leak_limit(gas)
     if fuel > lower:
-        found.append({"substance": "fuel", "figure": "lower limit in air", "fraction": lower, "basis": "1 atm",
-                      "times": fuel / lower, "status": "seen"})
+        found.append(
+            {
+                "substance": "fuel",
+                "figure": "lower limit in air",
+                "fraction": lower,
+                "basis": "1 atm",
+                "times": fuel / lower,
+                "status": "seen",
+            }
+        )
     return found
 
 

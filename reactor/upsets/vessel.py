@@ -9,7 +9,7 @@ from reactor.models import assemble
 from reactor.models.stirred_tank import tank_of
 from reactor.upsets.elements import first_above
 
-RESIDENCES = 30
+RESIDENCES = 15
 
 
 class Transient(NamedTuple):
