@@ -9,14 +9,11 @@ from typing import NamedTuple
 
 import numpy as np
 
-from reactor.errors import ConvergenceError
 from reactor.kernel.continuation import trace
-from reactor.kernel.plugflow import Budget
-from reactor.kernel.tank import Balance, species_at
+from reactor.kernel.tank import Balance
 
 SCALE = 100.0  # K that count as one in the arc length
 DECADES = 2.0  # powers of ten in light that count as one
-NEWTON = 10
 
 
 class Steady(NamedTuple):
@@ -116,7 +113,7 @@ class _Heat:
         T = float(np.clip(y[0] * SCALE, 200.0, 1800.0))
         tank = self.changed(p)
         balance = Balance(tank)
-        self.n = n = composition(balance, T, self.n)
+        self.n = n = balance.at_rest(T, self.n, near=True)[0][0]
         K, time = len(n), tank.volume * balance.density(n, T) / balance.mass_flow
         jac = balance.jacobian(n, T)
         change, heat = balance.slope(n, T)
@@ -136,25 +133,7 @@ class _Heat:
         slips, stable = [], []
         for t, q in zip(T, p, strict=True):
             balance = Balance(self.changed(q))
-            self.n = composition(balance, t * SCALE, self.n)
+            self.n = balance.at_rest(t * SCALE, self.n, near=True)[0][0]
             slips.append(self.n[balance.tank.chlorine] / balance.n_in[balance.tank.chlorine])
             stable.append(np.linalg.eigvals(balance.jacobian(self.n, t * SCALE)).real.max() < 0)
         return np.array(slips), np.array(stable)
-
-
-def composition(balance, T, near):
-    """Return the steady composition at a held temperature, by Newton's rule from a near one."""
-    n, K = near.copy(), len(near)
-    for _ in range(NEWTON):
-        change, _ = balance.slope(n, T)
-        try:
-            step = np.linalg.solve(balance.jacobian(n, T)[:K, :K], -change)
-        except np.linalg.LinAlgError:
-            break
-        n = np.maximum(n + step, 0.1 * n)
-        if np.all(np.abs(step) < 1e-9 * n + 1e-18):
-            return n
-    try:
-        return species_at(balance, T, near, Budget())
-    except ConvergenceError:
-        return species_at(balance, T, balance.n_in, Budget())
