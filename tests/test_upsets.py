@@ -58,7 +58,7 @@ def unchanged(tube):
 
 def test_gas_in_an_unchanged_tube_goes_on_along_the_steady_profile(tube, unchanged):
     # Limit: nothing is changed, so every element leaves at the rest of its residence time, as warm as the
-    # outlet. 0.3 % by six elements.
+    # outlet. 0.3 % by twelve elements.
     whole = tube.profile.total("time")
     expected = [whole * (1 - (i + 0.5) / len(unchanged.old)) for i in range(len(unchanged.old))]
     assert [e.leaves for e in unchanged.old] == pytest.approx(expected, abs=3e-3 * whole)
@@ -68,7 +68,7 @@ def test_gas_in_an_unchanged_tube_goes_on_along_the_steady_profile(tube, unchang
 
 
 def test_old_elements_fill_the_tube(tube, unchanged):
-    # Limit: the volumes of all elements at time zero add up to the volume of the tube; 0.5 % by six elements.
+    # Limit: the volumes of all elements at time zero add up to the volume of the tube; 0.5 % by twelve elements.
     filled = sum(element.volume(0.0) for element in unchanged.old)
     assert filled == pytest.approx(tube.profile.volume / tube.case.vessel.parallel, rel=5e-3)
 

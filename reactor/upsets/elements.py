@@ -23,7 +23,7 @@ from reactor.kernel.plugflow import Budget, integrate
 from reactor.models.plug_flow import tube_of
 
 R = 8.31446261815324
-ELEMENTS = 6
+ELEMENTS = 12
 LOOSE = Budget(rtol=1e-5)
 BEYOND = 0.8  # of the length, by which old gas is followed further: it may be pushed out later than it thinks
 
@@ -44,7 +44,7 @@ class Track(NamedTuple):
     leaves: float
 
     def volume(self, t):
-        """Return the volume of the element at a reading of the clock [m^3]."""
+        """Return the volume of the element at readings of the clock [m^3]."""
         specific = R * self.T * self.n.sum(axis=1) / self.P
         return self.mass * np.interp(t, self.clock, specific)
 
@@ -105,8 +105,8 @@ class Transient(NamedTuple):
     def held(self, t):
         """Return the moles of every species inside all tubes at a time [mol]."""
         total = sum((e.mass * e.at(t) for e in self.old if e.leaves > t), np.zeros(self.new.n.shape[1]))
-        age = np.linspace(0.0, min(t, self.new.leaves), 200)
-        states = np.array([self.new.at(a) for a in age])
+        age = np.append(self.new.clock[self.new.clock < t], min(t, self.new.leaves))
+        states = np.vstack([self.new.n[: len(age) - 1], self.new.at(age[-1])])
         return self.tubes * (total + self.flow * np.trapezoid(states, age, axis=0))
 
     def released(self, t):
@@ -222,10 +222,9 @@ def transient(case, plant, old, after, gas):
 def _pushed(old, new, flow, volume):
     """Return old elements with the time at which their middle has been pushed to the outlet."""
     times = np.linspace(0.0, 3.0 * max(new.leaves, max(e.leaves for e in old)), 1500)
-    fresh = R * new.T * new.n.sum(axis=1) / new.P
-    behind = flow * np.array([np.trapezoid(*_until(fresh, new.clock, t)) for t in times])
+    behind = flow * _entered(R * new.T * new.n.sum(axis=1) / new.P, new.clock, times)
     for element in old:
-        own = np.array([element.volume(t) for t in times])
+        own = element.volume(times)
         place = behind + own / 2
         behind = behind + own
         late = place >= volume
@@ -233,7 +232,7 @@ def _pushed(old, new, flow, volume):
         yield element._replace(leaves=leaves)
 
 
-def _until(value, clock, t):
-    """Return the part of a curve up to a time (what entered at most t ago); it holds its last value."""
-    kept = clock < t
-    return np.append(value[kept], np.interp(t, clock, value)), np.append(clock[kept], t)
+def _entered(specific, clock, times):
+    """Return the integral of a specific volume over the age of gas, held at its last value beyond the outlet."""
+    total = np.append(0.0, np.cumsum((specific[1:] + specific[:-1]) / 2 * np.diff(clock)))
+    return np.interp(times, clock, total) + np.maximum(times - clock[-1], 0.0) * specific[-1]
