@@ -18,6 +18,7 @@ from reactor.hazards import corners, explosive, paths
 from reactor.hazards.explosive import Class
 from reactor.kernel.continuation import trace
 from reactor.models import assemble
+from reactor.rating import hazard, judge, surroundings
 from reactor.report import upset as printed
 from reactor.stream import Stream
 from reactor.upsets import curves, elements, record, regimes, rows, vessel
@@ -361,6 +362,24 @@ def test_widening_the_box_of_meter_errors_never_improves_its_worst(ratio, error,
         assert box >= inside.max()
         ranks.append(box)
     assert ranks[1] >= ranks[0]
+
+
+@few
+@given(st.sampled_from(["C3H8", "CHCl3", "C2H5Cl", "1-C3H7Cl", "n-C4H10"]), st.floats(5, 500))
+def test_a_calculated_range_never_gives_pass(fuel, ratio):
+    mixture = explosive.classify(BOOK, {fuel: ratio, "Cl2": 1}, 298.15, 1e5)
+    worst = corners.worst_corner(BOOK, [stream("all", **{fuel: ratio, "Cl2": 1})], {}, 1e5)
+    found = judge.explosive_range({"mixtures": [hazard.record("inlet, mixed", mixture, worst)]})
+    assert found.word in ("CAUTION", "FAIL")
+
+
+@pytest.mark.parametrize(("changes", "word"), [([], "NOT ASSESSED"), (["upsets.chlorine_wide_open=6"], "FAIL")])
+def test_the_open_chlorine_valve_gets_a_verdict(changes, word):
+    case = load(CASES / "lapwing_ten.toml", changes)
+    records = surroundings.met(case, GAS, BOOK)
+    assert surroundings.valve(case, records).word == word
+    assert surroundings.path(records).word == "PASS"
+    assert surroundings.mixing(records).word == "CAUTION"
 
 
 def test_alkane_first_stays_out_of_the_range_and_chlorine_first_does_not():

@@ -59,6 +59,8 @@ def wide_open(case, gas, book, factor):
 def met(case, gas, book):
     """Return records of what is met between the streams: bad mixing, the open valve, the filling paths."""
     alkane, chlorine = flows(case, gas)
+    if alkane is None or chlorine is None:  # one premixed stream: nothing meets at the inlet
+        return []
     found = paths.segregation(book, alkane, chlorine, case.vessel.pressure)
     records = [
         {
@@ -80,6 +82,10 @@ def met(case, gas, book):
 
 def verdicts(case, gas, profile, records):
     """Return the verdicts on mixing, open valve, filling, wet service and leaks."""
+    if not records:
+        names = ("mixing at the inlet", "chlorine valve wide open", "filling and purging")
+        premixed = [Verdict(name, NOT_ASSESSED, "", "", "the feed comes premixed") for name in names]
+        return (*premixed, wet(case), leak(gas, profile))
     return mixing(records), valve(case, records), path(records), wet(case), leak(gas, profile)
 
 
