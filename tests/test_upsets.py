@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import time
 from dataclasses import replace
 from pathlib import Path
 
@@ -13,6 +14,7 @@ from hypothesis import strategies as st
 
 from reactor import chemistry, library
 from reactor.case import load
+from reactor.cli import cli
 from reactor.errors import CaseError
 from reactor.hazards import corners, explosive, paths
 from reactor.hazards.explosive import Class
@@ -289,6 +291,27 @@ def test_an_unknown_row_and_strict_reading_are_refused(tube):
         record.upset(tube.case, {"U99"})
     with pytest.raises(CaseError, match=r"upsets\.valve: missing"):
         record.upset(tube.case, {"U29"}, strict=True)
+
+
+def test_the_command_writes_worksheet_and_triangle(tmp_path, capsys):
+    sheet, points, figure = (str(tmp_path / name) for name in ("sheet.csv", "points.csv", "triangle.png"))
+    case = str(CASES / "lapwing_ten.toml")
+    for triangle in (points, figure):
+        words = ["upset", case, "--row", "U09", "--csv", sheet, "--triangle", triangle]
+        cli(words, standalone_mode=False)
+    out = capsys.readouterr().out
+    assert "U09  No: lamp power" in out
+    assert len(Path(sheet).read_text().splitlines()) == 2
+    assert Path(points).read_text().startswith("part,fuel [1]")
+    assert Path(figure).read_bytes().startswith(b"\x89PNG")
+
+
+def test_fifteen_rows_of_a_tube_take_less_than_twenty_seconds(tube):
+    listed = [row["id"] for row in library.table("hazards/deviations.csv").rows][:15]
+    start = time.perf_counter()
+    found = rows.table(tube, set(listed))
+    assert time.perf_counter() - start < 20
+    assert len(found) == 15
 
 
 # --- regimes --------------------------------------------------------------------------------------

@@ -66,7 +66,7 @@ def met(case, gas, book):
         {
             "where": "inlet, not mixed at all",
             "class": str(found.line.class_),
-            "at": found.line.at,
+            "at": quantity(found.line.at, "1"),
             "tolerated": quantity(found.tolerated, "1"),
             "mean": str(found.mean),
         }
@@ -76,7 +76,7 @@ def met(case, gas, book):
         class_ = wide_open(case, gas, book, factor)
         records.append({"where": f"inlet, chlorine valve wide open (x {factor:g})", "class": str(class_)})
     return records + [
-        {"where": words, "class": str(line.class_), "at": line.at} for words, line in filling(case, gas, book)
+        {"where": words, "class": str(line.class_), "at": quantity(line.at, "1")} for words, line in filling(case, gas, book)
     ]
 
 
@@ -152,6 +152,5 @@ def leak(gas, profile):
 
 
 def assess(case, gas, profile):
-    """Return (records, verdicts) of a rated case."""
-    records = met(case, gas, hazard.rulebook(case, gas))
-    return records, verdicts(case, gas, profile, records)
+    """Return the verdicts of a rated case on what surrounds it."""
+    return verdicts(case, gas, profile, met(case, gas, hazard.rulebook(case, gas)))

@@ -38,7 +38,7 @@ def rate(case):
     results = bands(case, equipment, results)
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
     gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
-    results["paths"], around = surroundings.assess(case, gas, profile)
+    around = surroundings.assess(case, gas, profile)
     verdicts = (*judge.verdicts(case, equipment, profile, results, gaps, dangers), *around)
     return Result(
         title=case.title,

@@ -214,8 +214,8 @@ def leaks(record, emphasis):
             worst[leak["substance"]] = leak
     rows = []
     for name, leak in worst.items():
-        label = f"{name}: {leak['figure']} {figure(1e6 * leak['fraction'])} ppm"
-        rows.append(line(label, f"{leak['times']:.0f} times in the gas", leak["status"]))
+        label = f"{name}: {leak['figure']} {figure(1e6 * leak['fraction']['value'])} ppm"
+        rows.append(line(label, f"{leak['times']['value']:.0f} times in the gas", leak["status"]))
     return section("WHAT COULD LEAK", rows, emphasis)
 
 

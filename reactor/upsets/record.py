@@ -220,9 +220,9 @@ def leaks(at):
                 {
                     "substance": entry.substance,
                     "figure": entry.figure,
-                    "fraction": entry.fraction,
+                    "fraction": quantity(entry.fraction, "1"),
                     "basis": entry.basis,
-                    "times": most / entry.fraction,
+                    "times": quantity(most / entry.fraction, "1"),
                     "status": entry.cited.status,
                 }
             )
@@ -233,9 +233,9 @@ def leaks(at):
             {
                 "substance": "fuel",
                 "figure": "lower limit in air",
-                "fraction": lower,
+                "fraction": quantity(lower, "1"),
                 "basis": "1 atm",
-                "times": fuel / lower,
+                "times": quantity(fuel / lower, "1"),
                 "status": "seen",
             }
         )
