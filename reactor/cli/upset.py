@@ -5,6 +5,7 @@ import os
 import click
 
 from reactor.cli.common import OVERRIDE, STRICT, emphasis, show, write
+from reactor.errors import CaseError
 
 
 @click.command()
@@ -48,6 +49,10 @@ def _draw(record, path):
     if path == "-" or path.endswith(".csv"):
         write(path, triangle_csv(record["ternary"]))
         return
+    try:
+        import matplotlib  # noqa: F401 - asked for here so that its absence is said in words
+    except ImportError:
+        raise CaseError("a figure needs matplotlib: pip install matplotlib; or write points.csv") from None
     from reactor.report.figures import ternary
 
     ternary.save(record["ternary"], path, record["title"])

@@ -61,14 +61,11 @@ def headline(record, emphasis):
     worst = f"worst of three: {h['worst_model']}"
     rows = [
         line("hottest gas, steady", in_unit(h["hottest"], "degC")),
-        line(
-            "dark chain runs away above", in_unit(h["light_off_temperature"], "degC"), "upper bound, in 10 s"
-        ),
-        line("dark reactor lights off at", in_unit(h["dark_feed_temperature"], "degC"), "feed; mechanism"),
-        line("dark tank: unstable state at", in_unit(h["dark_unstable_temperature"], "degC")),
+        line("dark chain runs away above", in_unit(h["light_off_temperature"], "degC"), "upper bound, in 10 s"),
+        *_dark_feed(h),
         line("MTSR (leftover chlorine reacts)", in_unit(h["mtsr"], "degC"), f"severity {h['severity']}"),
         line("fastest warming, no cooling", in_unit(h["heating_rate"], "K/s")),
-        line("shortest time to the limit", in_unit(h["time_to_limit"], "s")),
+        line("shortest time to the limit", in_unit(h["time_to_limit"], "s"), "by the chlorine inside"),
         line("direct trip, valve shut after", in_unit(h["direct_trip"], "s")),
         line("temperature trip, valve shut after", in_unit(h["temperature_trip"], "s")),
         line("sweep after the valve is shut", in_unit(h["sweep"], "s")),
@@ -81,8 +78,18 @@ def headline(record, emphasis):
         line("  pressure ratio, closed volume", in_unit(h["worst_pressure_ratio"], "1")),
     ]
     rows += [line(f"  chlorine: {i['section']}"[:34], in_unit(i["mass"], "kg")) for i in record["inventory"]]
+    for state in record["dark_states"]:
+        label = "dark tank: steady state" if state["stable"] else "dark tank: unstable state"
+        rows.append(line(label, in_unit(state["temperature"], "degC")))
     rows += [paragraph(text) for text in remarks(h)]
     return section("HEADLINE", rows, emphasis)
+
+
+def _dark_feed(h):
+    """Give the feed temperature at which a dark tube lights off; a tank has states instead."""
+    if h["dark_feed_temperature"]["value"] is not None:
+        T = in_unit(h["dark_feed_temperature"], "degC")
+        yield line("dark tube uses half its Cl2 from", T, "feed; mechanism")
 
 
 def remarks(h):
@@ -114,9 +121,7 @@ COLDEST = 250.01  # K; a critical wall at the end of the search means any wall
 def regimes(record, emphasis):
     """Give the classical criteria in the lit and the dark regime side by side."""
     names = list(record["regimes"])
-    rows = [
-        f"{'':<32}" + "".join(f"{name.replace('dark, upper bound', 'dark, bound'):>15}" for name in names)
-    ]
+    rows = [f"{'':<32}" + "".join(f"{name.replace('dark, upper bound', 'dark, bound'):>15}" for name in names)]
     for key, unit, label in REGIME:
         cells = [_cell(record["regimes"][name][key], key, unit) for name in names]
         rows.append(f"{label:<32}" + "".join(f"{cell:>15}" for cell in cells))
@@ -155,9 +160,7 @@ def curves(record, emphasis):
     """Give ignition and extinction of a tank."""
     rows = []
     for curve in record["curves"]:
-        turns = [
-            f"{word} at {figure(value)} (gas at {T - 273.15:.0f} degC)" for value, T, word in curve["turns"]
-        ]
+        turns = [f"{word} at {figure(value)} (gas at {T - 273.15:.0f} degC)" for value, T, word in curve["turns"]]
         unit = "factor on the light" if curve["parameter"] == "light" else "K of feed"
         span = f"{figure(min(curve['value']))} to {figure(max(curve['value']))}"
         found = "; ".join(turns) or "one steady state throughout"
@@ -172,9 +175,7 @@ def paths(record, emphasis):
         rows.append(line(p["where"], p["class"]) if len(p["where"]) <= 34 else f"{p['where']}: {p['class']}")
         if "tolerated" in p and p["tolerated"]["value"] is not None:
             share = figure(100 * p["tolerated"]["value"], 3)
-            rows.append(
-                paragraph(f"parcels stay {p['mean']} up to an intensity of segregation of {share} %", "    ")
-            )
+            rows.append(paragraph(f"parcels stay {p['mean']} up to an intensity of segregation of {share} %", "    "))
     return section("BETWEEN THE STREAMS", rows, emphasis)
 
 

@@ -8,14 +8,14 @@ from reactor.rating.plant import plant
 
 @dataclass(frozen=True)
 class Changed:
-    """A case with factors on its light and its heat exchange; `new_feed` tells whether other gas comes in."""
+    """A case with factors on light and heat exchange; `new_feed` tells whether other gas comes in."""
 
     case: Any
     light: float = 1.0
     heat: float = 1.0
     keep_lamp_heat: bool = False
     new_feed: bool = False
-    flow: float = 1.0
+    share: float = 1.0  # of the vessels in parallel that are struck
 
     def equipment(self, gas, base):
         """Return the plant; `base` is the light of the unchanged case."""

@@ -97,9 +97,7 @@ def _curve(name, changed, state, p, ends, shown):
 def _named(turns):
     """Name the turning points: the colder of a pair is the ignition, the hotter the extinction."""
     turns = sorted(turns, key=lambda turn: turn[1])
-    return tuple(
-        (*turn, "ignition" if number % 2 == 0 else "extinction") for number, turn in enumerate(turns)
-    )
+    return tuple((*turn, "ignition" if number % 2 == 0 else "extinction") for number, turn in enumerate(turns))
 
 
 class _Heat:

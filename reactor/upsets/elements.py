@@ -81,9 +81,7 @@ class Transient(NamedTuple):
     def gas(self):
         """Return temperatures, pressures and moles per kilogram of all gas on its way."""
         tracks = [(track, track.inside()) for track in (*self.old, self.new)]
-        return tuple(
-            np.concatenate([getattr(t, part)[inside] for t, inside in tracks]) for part in ("T", "P", "n")
-        )
+        return tuple(np.concatenate([getattr(t, part)[inside] for t, inside in tracks]) for part in ("T", "P", "n"))
 
     def outflow(self):
         """Return the flow of every species out of all tubes once the old gas has gone [mol/s]."""
@@ -111,9 +109,7 @@ class Transient(NamedTuple):
 
     def released(self, t):
         """Return the moles of every species that have left all tubes by a time [mol]."""
-        total = sum(
-            (e.mass * e.at(e.leaves) for e in self.old if e.leaves <= t), np.zeros(self.new.n.shape[1])
-        )
+        total = sum((e.mass * e.at(e.leaves) for e in self.old if e.leaves <= t), np.zeros(self.new.n.shape[1]))
         more = max(0.0, t - self.new.leaves) * self.flow * self.new.at(self.new.leaves)
         return self.tubes * (total + more)
 
@@ -134,9 +130,7 @@ def new_gas(profile, gas):
     """Return the track of the gas that enters a steady tube."""
     mass = profile.moles @ gas.molar_mass
     clock = profile.totals["time"]
-    return Track(
-        clock, profile.moles / mass[:, None], profile.temperature, profile.pressure, 0.0, float(clock[-1])
-    )
+    return Track(clock, profile.moles / mass[:, None], profile.temperature, profile.pressure, 0.0, float(clock[-1]))
 
 
 def old_gas(profile, gas, tubes, number=ELEMENTS):

@@ -75,9 +75,7 @@ def power(setting, size):
         "peak": peak,
         "class": str(setting.class_between(setting.case)),
         "latent_heat": stored * setting.heat,
-        "assumptions": (
-            f"upper bound of the dark chain: the feed at the hottest gas runs away in {wait:.3g} s",
-        ),
+        "assumptions": (f"upper bound of the dark chain: the feed at the hottest gas runs away in {wait:.3g} s",),
     }
 
 

@@ -57,16 +57,11 @@ def upset(case, only=None, strict=False):
     at = setting(case)
     if strict and at.times.assumed:
         raise CaseError(
-            [
-                f"{a['key']}: missing; strict reading takes no default ({a['value']}: {a['why']})"
-                for a in at.times.assumed
-            ]
+            [f"{a['key']}: missing; strict reading takes no default ({a['value']}: {a['why']})" for a in at.times.assumed]
         )
     known = {row["id"] for row in library.table("hazards/deviations.csv").rows}
     if only is not None and not set(only) <= known:
-        raise CaseError(
-            f"no deviation {', '.join(sorted(set(only) - known))}; known: {', '.join(sorted(known))}"
-        )
+        raise CaseError(f"no deviation {', '.join(sorted(set(only) - known))}; known: {', '.join(sorted(known))}")
     table = rows.table(at, only)
     return {
         "title": case.title,
@@ -74,6 +69,7 @@ def upset(case, only=None, strict=False):
         "date": str(case.about.date or ""),
         "headline": headline(at),
         "regimes": criteria(at),
+        "dark_states": [{"temperature": quantity(s.T, "K"), "stable": bool(s.stable)} for s in regimes.dark_states(at)],
         "sensitivity": sensitivities(at),
         "curves": [_curve(c) for c in steady_curves(at)],
         "inventory": [
@@ -200,9 +196,7 @@ def corners_of(at):
     meters = at.case.meters
     alkane, chlorine = surroundings.flows(at.case, at.gas)
     return [
-        (1 + a * meters.alkane) * alkane.moles + (1 + c * meters.chlorine) * chlorine.moles
-        for a in (-1, 1)
-        for c in (-1, 1)
+        (1 + a * meters.alkane) * alkane.moles + (1 + c * meters.chlorine) * chlorine.moles for a in (-1, 1) for c in (-1, 1)
     ]
 
 

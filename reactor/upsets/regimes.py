@@ -4,7 +4,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor.hazards import exotherm, runaway
+from reactor.hazards import exotherm, explosive, runaway, substitution
 from reactor.kernel.light import absorb
 from reactor.kernel.rates import Rates
 from reactor.kernel.thermo import R
@@ -141,9 +141,7 @@ def criteria(setting):
     for name, chain in chains.items():
         E = chain.activation(wall)
         S, N = runaway.tube_numbers(chain, wall, rise, cooling)
-        semenov = runaway.critical_wall(
-            lambda T, c=chain: runaway.semenov(c, T, max(cooling, 1e-9)), runaway.SEMENOV, 250.0
-        )
+        semenov = runaway.critical_wall(lambda T, c=chain: runaway.semenov(c, T, max(cooling, 1e-9)), runaway.SEMENOV, 250.0)
         found[name] = {
             "activation": E,
             "rate": chain.rate(wall),
@@ -187,17 +185,15 @@ def no_stop_temperature(setting, hottest=900.0):
 
 
 def heating(setting):
-    """Return the fastest warming of the gas without cooling [K/s], and the shortest time to the limit [s]."""
+    """
+    Return the fastest warming of the gas without cooling [K/s], and the shortest time to the limit [s].
+
+    The time counts where the chlorine left can warm the gas to the limit at all; None where it nowhere can.
+    """
     profile, gas = setting.profile, setting.gas
     capacity = np.einsum("mk,mk->m", profile.moles, gas.heat_capacity(profile.temperature))
     if profile.kind == "stirred tank":
-        held = (
-            profile.pressure
-            * profile.volume
-            / (R * profile.temperature)
-            * capacity
-            / profile.moles.sum(axis=1)
-        )
+        held = profile.pressure * profile.volume / (R * profile.temperature) * capacity / profile.moles.sum(axis=1)
         rate = profile.total("heat_reaction") / held
     else:
         time = profile.totals["time"]
@@ -206,8 +202,10 @@ def heating(setting):
         rate = np.append(power, power[-1]) / capacity
     margin = None
     if setting.limit is not None:
-        left = np.maximum(setting.limit - profile.temperature, 0.0)
-        margin = float((left / np.maximum(rate, 1e-9)).min())
+        x = explosive.fractions(setting.book, profile.moles)
+        done = substitution.adiabatic_temperature(setting.book.rungs, x, profile.temperature, shared=False)
+        left = np.maximum(setting.limit - profile.temperature, 0.0) / np.maximum(rate, 1e-9)
+        margin = float(left[done > setting.limit].min()) if (done > setting.limit).any() else None
     return float(rate.max()), margin
 
 
@@ -247,6 +245,4 @@ def dark_states(setting):
     if setting.case.vessel.kind != "stirred tank":
         return ()
     changed = Changed(setting.case, light=0.0)
-    return SOLVERS["stirred tank"](
-        changed.fixed_light(), changed.equipment(setting.gas, setting.light)
-    ).states
+    return SOLVERS["stirred tank"](changed.fixed_light(), changed.equipment(setting.gas, setting.light)).states

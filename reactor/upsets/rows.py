@@ -16,7 +16,7 @@ from reactor.errors import ReactorError
 from reactor.hazards import explosive
 from reactor.hazards.explosive import ORDER, Class
 from reactor.result import quantity
-from reactor.upsets import changes
+from reactor.upsets import changes, regimes
 from reactor.upsets.changes import Changed, brings_chlorine
 from reactor.upsets.other import OTHER, NotAssessedError
 
@@ -140,9 +140,7 @@ def acting(setting, limit_time, trip):
     for name, seconds in (("direct", times.direct), ("temperature", times.temperature)):
         if name == "direct" and trip == "temperature":
             continue
-        words.append(
-            f"{name} trip ({seconds:.1f} s) {'acts in time' if seconds < limit_time else 'is too late'}"
-        )
+        words.append(f"{name} trip ({seconds:.1f} s) {'acts in time' if seconds < limit_time else 'is too late'}")
     return "; ".join(words)
 
 
@@ -151,9 +149,11 @@ def _followed(setting, change, size):
     changed, words, notes, full = CHANGES[change](setting, size)
     transient = setting.follow(changed, full)
     peak, when = transient.peak()
-    response = setting.times.direct
-    out = transient.outflow()[setting.chlorine]
-    released = transient.released(response)[setting.chlorine] + transient.held(response)[setting.chlorine]
+    response, place, share = setting.times.direct, setting.chlorine, changed.share
+    steady = float(setting.profile.outlet.moles[place])
+    out = share * transient.outflow()[place] + (1 - share) * steady
+    released = share * (transient.released(response)[place] + transient.held(response)[place])
+    released += (1 - share) * (steady * response + regimes.inventory(setting)["moles"])
     stored = max(_stored(setting, transient.held(t)) for t in np.linspace(0, transient.settled, 12))
     class_, more = _class(setting, changed, transient)
     found = {
@@ -190,9 +190,7 @@ def _class(setting, changed, transient):
     T, P, n = transient.gas()
     some = np.unique(np.linspace(0, len(T) - 1, 120).astype(int))
     some = some[(T[some] > 200.0) & (T[some] < HOTTEST)]
-    words, _ = explosive.along(
-        setting.book, n[some], T[some], P[some], preheat=setting.mixed(changed.case).temperature
-    )
+    words, _ = explosive.along(setting.book, n[some], T[some], P[some], preheat=setting.mixed(changed.case).temperature)
     ranks = [Class(word).rank for word in set(words)] + [setting.class_between(changed.case).rank]
     left = () if len(some) and T.max() < HOTTEST else ("stations above 1427 degC are not classified",)
     return str(ORDER[max(ranks)]), left
@@ -227,9 +225,7 @@ def _chlorine_flow(setting, size, words=None):
 def _chlorine_open(setting, size):
     factor = setting.times.chlorine_wide_open
     if factor is None:
-        raise NotAssessedError(
-            "upsets.chlorine_wide_open is not stated: flow through the open valve over the normal flow"
-        )
+        raise NotAssessedError("upsets.chlorine_wide_open is not stated: flow through the open valve over the normal flow")
     return _chlorine_flow(setting, factor, f"chlorine valve wide open: feed x {factor:g}")
 
 
@@ -251,14 +247,14 @@ def _lamp(setting, size):
 
 
 def _lamp_lost(setting, size):
-    number = changes.number_of_lamps(setting.case)
+    number, vessels = changes.number_of_lamps(setting.case), setting.case.vessel.parallel
     if number > 1:
-        share = 1 - 1 / number
         notes = ("the loss is spread over the lit length",)
-        return Changed(setting.case, light=share), f"1 of {number} lamps of every vessel off", notes, None
-    raise NotAssessedError(
-        "one lamp in each vessel: see lamps off; with several vessels in parallel one of them is dark"
-    )
+        return Changed(setting.case, light=1 - 1 / number), f"1 of {number} lamps of every vessel off", notes, None
+    if number == 1 and vessels > 1:
+        notes = ("the others run on as before",)
+        return Changed(setting.case, light=0.0, share=1 / vessels), f"1 of {vessels} vessels dark", notes, None
+    raise NotAssessedError("there is one lamp, or none: see the row for no light")
 
 
 def _restrike(setting, size):

@@ -68,9 +68,7 @@ def _hottest(setting, changed, dark):
 def _tank(setting, changed, dark):
     """Return the temperature of the steady state that goes on from the one of the case, by Newton's rule."""
     case = changed.fixed_light()
-    tank = tank_of(
-        case, changed.equipment(setting.gas, setting.light), assemble.mixed_feed(case, setting.gas)
-    )
+    tank = tank_of(case, changed.equipment(setting.gas, setting.light), assemble.mixed_feed(case, setting.gas))
     balance = Balance(tank)
     start = setting.feed if dark else setting.profile.outlet
     n, T = start.moles / start.mass(setting.gas), start.temperature

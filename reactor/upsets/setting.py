@@ -50,9 +50,7 @@ class Setting:
         """Return the transient that a change at time zero starts."""
         case, tubes = changed.fixed_light(), self.case.vessel.parallel
         if self.case.vessel.kind == "stirred tank":
-            return vessel.transient(
-                case, changed.equipment(self.gas, self.light), self.profile, self.gas, full
-            )
+            return vessel.transient(case, changed.equipment(self.gas, self.light), self.profile, self.gas, full)
         equipment, after = self.steady(changed)
         if changed.new_feed and full is None:
             old = elements.undisturbed(self.profile, self.gas, tubes)

@@ -93,6 +93,4 @@ def transient(case, plant, before, gas, full=None, residences=RESIDENCES):
     mass = tank.volume * np.array([balance.density(*state) for state in zip(n, T, strict=True)])
     slopes = [balance.slope(*state) for state in zip(n, T, strict=True)]
     shrink = np.array([dT / t + dn.sum() / m.sum() for (dn, dT), m, t in zip(slopes, n, T, strict=True)])
-    return Transient(
-        clock, n, T, mass, balance.mass_flow + mass * shrink, tank.pressure, case.vessel.parallel, feed.moles
-    )
+    return Transient(clock, n, T, mass, balance.mass_flow + mass * shrink, tank.pressure, case.vessel.parallel, feed.moles)
