@@ -13,7 +13,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from reactor import chemistry, library
-from reactor.case import load
+from reactor.case import load, loads
 from reactor.cli import cli
 from reactor.errors import CaseError
 from reactor.hazards import corners, explosive, paths
@@ -68,6 +68,21 @@ def test_gas_in_an_unchanged_tube_goes_on_along_the_steady_profile(tube, unchang
     for element in unchanged.old:
         T = np.interp(element.leaves, element.clock, element.T)
         assert pytest.approx(tube.profile.outlet.temperature, abs=0.1) == T
+
+
+def test_gas_that_passes_an_injector_goes_on_along_the_steady_profile():
+    # Limit: as above, with 30 % of the chlorine injected at 0.3 m. 0.5 %: one element straddles the injector.
+    case = (CASES / "lapwing_ten.toml").read_text()
+    case += '\n[[inject]]\nshare = "30 %"\nposition = "0.3 m"\n'
+    at = setting(loads(case))
+    old = elements.disturbed(at.case, at.plant, at.profile, at.gas)
+    found = elements.transient(at.case, at.plant, old, at.profile, at.gas)
+    whole = at.profile.total("time")
+    expected = [whole * (1 - (i + 0.5) / len(old)) for i in range(len(old))]
+    assert [e.leaves for e in found.old] == pytest.approx(expected, abs=5e-3 * whole)
+    for element in found.old:
+        T = np.interp(element.leaves, element.clock, element.T)
+        assert pytest.approx(at.profile.outlet.temperature, abs=0.5) == T
 
 
 def test_old_elements_fill_the_tube(tube, unchanged):

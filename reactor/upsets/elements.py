@@ -33,7 +33,7 @@ class Track(NamedTuple):
     One element of gas: its clock [s], moles per kilogram (M, K), temperature [K], pressure [Pa], mass [kg].
 
     The clock starts when the upset does (old gas) or when the element enters (new gas). `leaves` is its
-    reading at the outlet.
+    reading at the outlet; `growth` its mass over that at the start, since injectors add to it.
     """
 
     clock: np.ndarray
@@ -42,11 +42,19 @@ class Track(NamedTuple):
     P: np.ndarray
     mass: float
     leaves: float
+    growth: np.ndarray
 
     def volume(self, t):
         """Return the volume of the element at readings of the clock [m^3]."""
-        specific = R * self.T * self.n.sum(axis=1) / self.P
-        return self.mass * np.interp(t, self.clock, specific)
+        return self.mass * np.interp(t, self.clock, self.specific())
+
+    def specific(self):
+        """Return the volume along the clock by mass at its start [m^3/kg]."""
+        return self.growth * R * self.T * self.n.sum(axis=1) / self.P
+
+    def moles(self, t):
+        """Return moles by mass at the start of the clock, at one of its readings [mol/kg]."""
+        return np.interp(t, self.clock, self.growth) * self.at(t)
 
     def at(self, t):
         """Return moles per kilogram at a reading of the clock."""
@@ -85,7 +93,7 @@ class Transient(NamedTuple):
 
     def outflow(self):
         """Return the flow of every species out of all tubes once the old gas has gone [mol/s]."""
-        return self.tubes * self.flow * self.new.at(self.new.leaves)
+        return self.tubes * self.flow * self.new.moles(self.new.leaves)
 
     @property
     def settled(self):
@@ -102,15 +110,17 @@ class Transient(NamedTuple):
 
     def held(self, t):
         """Return the moles of every species inside all tubes at a time [mol]."""
-        total = sum((e.mass * e.at(t) for e in self.old if e.leaves > t), np.zeros(self.new.n.shape[1]))
+        total = sum((e.mass * e.moles(t) for e in self.old if e.leaves > t), np.zeros(self.new.n.shape[1]))
         age = np.append(self.new.clock[self.new.clock < t], min(t, self.new.leaves))
-        states = np.vstack([self.new.n[: len(age) - 1], self.new.at(age[-1])])
+        inside = len(age) - 1
+        grown = self.new.growth[:inside, None] * self.new.n[:inside]
+        states = np.vstack([grown, self.new.moles(age[-1])])
         return self.tubes * (total + self.flow * np.trapezoid(states, age, axis=0))
 
     def released(self, t):
         """Return the moles of every species that have left all tubes by a time [mol]."""
-        total = sum((e.mass * e.at(e.leaves) for e in self.old if e.leaves <= t), np.zeros(self.new.n.shape[1]))
-        more = max(0.0, t - self.new.leaves) * self.flow * self.new.at(self.new.leaves)
+        total = sum((e.mass * e.moles(e.leaves) for e in self.old if e.leaves <= t), np.zeros(self.new.n.shape[1]))
+        more = max(0.0, t - self.new.leaves) * self.flow * self.new.moles(self.new.leaves)
         return self.tubes * (total + more)
 
 
@@ -129,8 +139,8 @@ def first_above(clock, T, limit, inside=True):
 def new_gas(profile, gas):
     """Return the track of the gas that enters a steady tube."""
     mass = profile.moles @ gas.molar_mass
-    clock = profile.totals["time"]
-    return Track(clock, profile.moles / mass[:, None], profile.temperature, profile.pressure, 0.0, float(clock[-1]))
+    clock, n = profile.totals["time"], profile.moles / mass[:, None]
+    return Track(clock, n, profile.temperature, profile.pressure, 0.0, float(clock[-1]), mass / mass[0])
 
 
 def old_gas(profile, gas, tubes, number=ELEMENTS):
@@ -148,12 +158,13 @@ def undisturbed(profile, gas, tubes):
     for age, mass in old_gas(profile, gas, tubes):
         later = np.append(age, whole.clock[whole.clock > age]) - age
         n = np.array([whole.at(age + t) for t in later])
-        T, P = (np.interp(later + age, whole.clock, column) for column in (whole.T, whole.P))
-        found.append(Track(later, n, T, P, mass, float(whole.clock[-1] - age)))
+        columns = (whole.T, whole.P, whole.growth)
+        T, P, growth = (np.interp(later + age, whole.clock, column) for column in columns)
+        found.append(Track(later, n, T, P, mass, float(whole.clock[-1] - age), growth / growth[0]))
     return found
 
 
-def disturbed(case, plant, before, gas, full=None):
+def disturbed(case, plant, before, gas):
     """
     Return old gas under new light, wall or pressure, followed from where it is.
 
@@ -162,11 +173,9 @@ def disturbed(case, plant, before, gas, full=None):
     case, plant : Case, Plant
         The changed tube. [-]
     before : Profile
-        The steady tube before. [-]
+        The steady tube before; its dark profile where a lamp comes back on. [-]
     gas : Mechanism
         Chemistry. [-]
-    full : Stream
-        Unreacted gas that fills the tube instead of the profile (a lamp was out for long). [-]
     """
     tube, tubes, K = tube_of(case, plant), case.vessel.parallel, len(gas.species)
     clock, mass = before.totals["time"], before.moles @ gas.molar_mass
@@ -175,9 +184,6 @@ def disturbed(case, plant, before, gas, full=None):
         z, T, Tc = (float(np.interp(age, clock, c)) for c in (before.z, before.temperature, before.coolant))
         n = np.array([np.interp(age, clock, before.moles[:, k] / mass) for k in range(K)])
         local = float(np.interp(age, clock, mass)) / tubes
-        if full is not None:
-            amount *= float(T / full.temperature * (n.sum() / (full.total / full.mass(gas))))
-            n, T = full.moles / full.mass(gas), full.temperature
         if case.cooling.inlet is not None and np.isinf(tube.coolant):
             Tc = case.cooling.inlet
         path = integrate(_from(tube, z, case.vessel.length), n, T, Tc, case.vessel.pressure, local, LOOSE)
@@ -190,6 +196,7 @@ def disturbed(case, plant, before, gas, full=None):
                 path.state[:, K + 2],
                 amount,
                 float(np.interp(case.vessel.length, path.z, time)),
+                path.mass_flow / path.mass_flow[0],
             )
         )
     return found
@@ -216,7 +223,7 @@ def transient(case, plant, old, after, gas):
 def _pushed(old, new, flow, volume):
     """Return old elements with the time at which their middle has been pushed to the outlet."""
     times = np.linspace(0.0, 3.0 * max(new.leaves, max(e.leaves for e in old)), 1500)
-    behind = flow * _entered(R * new.T * new.n.sum(axis=1) / new.P, new.clock, times)
+    behind = flow * _entered(new.specific(), new.clock, times)
     for element in old:
         own = element.volume(times)
         place = behind + own / 2

@@ -11,6 +11,7 @@ from reactor.models import SOLVERS, assemble
 from reactor.rating import hazard
 from reactor.rating.plant import lamps, plant
 from reactor.upsets import elements, vessel
+from reactor.upsets.changes import Changed
 from reactor.upsets.plant_response import Response, response
 
 LOOSE = 1e-6  # relative tolerance of the runs behind a table
@@ -55,7 +56,8 @@ class Setting:
         if changed.new_feed and full is None:
             old = elements.undisturbed(self.profile, self.gas, tubes)
         else:
-            old = elements.disturbed(case, equipment, self.profile, self.gas, full)
+            before = self.profile if full is None else self.steady(Changed(self.case, light=0.0))[1]
+            old = elements.disturbed(case, equipment, before, self.gas)
         return elements.transient(case, equipment, old, after, self.gas)
 
     def mixed(self, case):
