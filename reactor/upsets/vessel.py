@@ -10,6 +10,7 @@ from reactor.models.stirred_tank import tank_of
 from reactor.upsets.elements import first_above
 
 RESIDENCES = 15
+FINE = 1e-8  # relative tolerance: what leaves is summed over the steps
 
 
 class Transient(NamedTuple):
@@ -89,7 +90,8 @@ def transient(case, plant, before, gas, full=None, residences=RESIDENCES):
     start = before.outlet if full is None else full
     duration = residences * tank.volume * balance.density(balance.n_in, feed.temperature) / balance.mass_flow
     n, T = start.moles / start.mass(gas), start.temperature
-    clock, n, T = follow(tank, n, T, duration, assemble.budget(case))
+    fine = assemble.budget(case)._replace(rtol=FINE)
+    clock, n, T = follow(tank, n, T, duration, fine)
     mass = tank.volume * np.array([balance.density(*state) for state in zip(n, T, strict=True)])
     slopes = [balance.slope(*state) for state in zip(n, T, strict=True)]
     shrink = np.array([dT / t + dn.sum() / m.sum() for (dn, dT), m, t in zip(slopes, n, T, strict=True)])
