@@ -233,6 +233,21 @@ class Uncertainty:
 
 
 @dataclass(frozen=True, kw_only=True)
+class Upsets:
+    """[upsets]: how fast the plant acts and what fills it; keys left out are assumed by `reactor upset`."""
+
+    temperature_detection: float | None = leave(kinds.TIME)
+    direct_detection: float | None = leave(kinds.TIME)
+    logic: float | None = leave(kinds.TIME)
+    valve: float | None = leave(kinds.TIME)
+    chlorine_wide_open: float | None = leave(kinds.NUMBER.within(1.0, 100.0, like="2.5"))
+    chlorine_line: float | None = leave(kinds.VOLUME)
+    dead_leg: float | None = leave(kinds.LENGTH.within(1e-4, 1.0, "12 mm"))
+    purge_gas: str | None = leave(Choice(("N2", "Ar", "CO2")))
+    filling: str | None = leave(Choice(("alkane first", "chlorine first")))
+
+
+@dataclass(frozen=True, kw_only=True)
 class Solver:
     """[solver]: tolerance and time budget."""
 
@@ -255,6 +270,7 @@ class Case:
     limits: Limits = Limits()
     meters: Meters = Meters()
     uncertainty: Uncertainty = Uncertainty()
+    upsets: Upsets = Upsets()
     solver: Solver = Solver()
     typed: dict[str, Any] = field(default_factory=dict)
     assumed: tuple[Assumed, ...] = ()
@@ -276,7 +292,8 @@ class Case:
 
     def hash(self):
         """Return the SHA-256 of all values in SI and of the files named; no path, no remark."""
-        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "uncertainty", "solver")
+        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "uncertainty", "upsets",
+                 "solver")
         content = {part: _plain(getattr(self, part)) for part in parts}
         content["sleeve"] = self.sleeve and asdict(self.sleeve)
         content["feed"] = {name: asdict(feed) for name, feed in self.feed.items()}

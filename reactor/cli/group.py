@@ -22,6 +22,7 @@ MODULES = {
     "band": "maps",
     "window": "maps",
     "frontier": "maps",
+    "upset": "upset",
     "rerun": "study",
     "merge": "study",
     "slate": "slate",

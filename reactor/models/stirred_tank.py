@@ -33,7 +33,7 @@ def solve(case, plant, look_further=True):
     """
     gas = plant.gas
     feed = assemble.mixed_feed(case, gas)
-    tank = _tank(case, plant, feed)
+    tank = tank_of(case, plant, feed)
     budget = assemble.budget(case)
     low, high = _reach(tank, feed, gas)
     states = steady_states(tank, low, high, budget)
@@ -41,7 +41,8 @@ def solve(case, plant, look_further=True):
     return _profile(case, gas, tank, feed, states, number, remark)
 
 
-def _tank(case, plant, feed):
+def tank_of(case, plant, feed):
+    """Return the tank as the kernel wants it."""
     gas, light, wall, share = plant.gas, plant.light, plant.wall, 1.0 / case.vessel.parallel
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
     lengths = np.diff(light.edges) / case.vessel.length

@@ -3,7 +3,7 @@
 from reactor import chemistry
 from reactor.models import SOLVERS
 from reactor.models.assemble import mixed_feed
-from reactor.rating import account, figures, hazard, identity, judge
+from reactor.rating import account, figures, hazard, identity, judge, surroundings
 from reactor.rating.bands import bands
 from reactor.rating.closures import closures
 from reactor.rating.plant import lamps, mechanism, plant
@@ -41,7 +41,8 @@ def rate(case, factors=NOMINAL):
     results = bands(case, equipment, results) if factors == NOMINAL else results
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
     gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
-    verdicts = judge.verdicts(case, equipment, profile, results, gaps, dangers)
+    around = surroundings.assess(case, gas, profile)
+    verdicts = (*judge.verdicts(case, equipment, profile, results, gaps, dangers), *around)
     return Result(
         title=case.title,
         revision=case.about.revision,
