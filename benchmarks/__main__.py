@@ -3,10 +3,10 @@
 import platform
 import sys
 
-from benchmarks import field, kernel, single
+from benchmarks import field, kernel, single, sweep
 
 FIGURES = {"single": kernel.single, "single_lsoda": kernel.single_lsoda, "sweep": kernel.sweep,
-           "size_scaling": kernel.size_scaling, "program": single.run, "field": field.run}
+           "size_scaling": kernel.size_scaling, "program": single.run, "study": sweep.run, "field": field.run}
 
 
 def main(names):

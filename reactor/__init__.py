@@ -7,7 +7,7 @@ Design calculator for continuous photochlorination reactors.
     result["chlorine_slip"], result.profile_frame()
 """
 
-__all__ = ["load", "rate"]
+__all__ = ["load", "rate", "sweep"]
 
 
 def load(path, overrides=(), strict=False):
@@ -22,3 +22,10 @@ def rate(case):
     from reactor.rating import rate as run
 
     return run(case)
+
+
+def sweep(case, vary, **options):
+    """Rate a case at many points; return a DataFrame with units; see `reactor.study.sweep`."""
+    from reactor.study import sweep as run
+
+    return run(case, vary, **options)

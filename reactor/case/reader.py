@@ -21,11 +21,13 @@ SINGLE = {
     "chemistry": schema.Chemistry,
     "limits": schema.Limits,
     "meters": schema.Meters,
+    "uncertainty": schema.Uncertainty,
+    "upsets": schema.Upsets,
     "solver": schema.Solver,
 }
 MANY = {"lamp": schema.Lamp, "inject": schema.Inject}
 KNOWN = (*SINGLE, *MANY, "feed")
-LATER = ("recycle", "targets", "upsets", "uncertainty", "print", "signoff")
+LATER = ("recycle", "targets", "print", "signoff")
 FEED_KEYS = ("flow", "ratio", "temperature")
 NO_COOLING = "no [cooling] section: no heat is taken out through the shell"
 

@@ -257,6 +257,33 @@ class Meters:
 
 
 @dataclass(frozen=True, kw_only=True)
+class Uncertainty:
+    """[uncertainty]: factors, up or down, one standard deviation, on what a band varies; 1 holds it still."""
+
+    cross_section: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.05"))
+    lamp_output: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.1"))
+    impurity: float | None = leave(kinds.NUMBER.within(1.0, 100.0, like="1.5"))
+    wall_loss: float | None = leave(kinds.NUMBER.within(1.0, 1000.0, like="3"))
+    exchange: float | None = leave(kinds.NUMBER.within(1.0, 10.0, like="1.3"))
+    rates: float | None = leave(kinds.NUMBER.within(0.0, 10.0, like="1"))
+
+
+@dataclass(frozen=True, kw_only=True)
+class Upsets:
+    """[upsets]: how fast the plant acts and what fills it; keys left out are assumed by `reactor upset`."""
+
+    temperature_detection: float | None = leave(kinds.TIME)
+    direct_detection: float | None = leave(kinds.TIME)
+    logic: float | None = leave(kinds.TIME)
+    valve: float | None = leave(kinds.TIME)
+    chlorine_wide_open: float | None = leave(kinds.NUMBER.within(1.0, 100.0, like="2.5"))
+    chlorine_line: float | None = leave(kinds.VOLUME)
+    dead_leg: float | None = leave(kinds.LENGTH.within(1e-4, 1.0, "12 mm"))
+    purge_gas: str | None = leave(Choice(("N2", "Ar", "CO2")))
+    filling: str | None = leave(Choice(("alkane first", "chlorine first")))
+
+
+@dataclass(frozen=True, kw_only=True)
 class Solver:
     """[solver]: tolerance and time budget."""
 
@@ -278,6 +305,8 @@ class Case:
     chemistry: Chemistry = Chemistry()
     limits: Limits = Limits()
     meters: Meters = Meters()
+    uncertainty: Uncertainty = Uncertainty()
+    upsets: Upsets = Upsets()
     solver: Solver = Solver()
     typed: dict[str, Any] = field(default_factory=dict)
     assumed: tuple[Assumed, ...] = ()
@@ -299,7 +328,8 @@ class Case:
 
     def hash(self):
         """Return the SHA-256 of all values in SI and of the files named; no path, no remark."""
-        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "solver")
+        parts = ("about", "inject", "vessel", "lamp", "cooling", "chemistry", "limits", "meters", "uncertainty", "upsets",
+                 "solver")
         content = {part: _plain(getattr(self, part)) for part in parts}
         content["sleeve"] = self.sleeve and asdict(self.sleeve)
         content["feed"] = {name: asdict(feed) for name, feed in self.feed.items()}

@@ -7,11 +7,16 @@ from reactor import library
 from reactor.case.values import nearest
 
 
+def rows():
+    """Return the rows of all species: those of the small mechanism, then those that only made mechanisms hold."""
+    return (*library.table("species.csv").rows, *library.table("networks/names.csv").rows)
+
+
 @cache
 def names():
-    """Return {any spelling: key} of every molecule in `data/species.csv`."""
+    """Return {any spelling: key} of every molecule in `data/species.csv` and `data/networks/names.csv`."""
     found: dict[str, str] = {}
-    for row in library.table("species.csv").where("kind", "molecule").rows:
+    for row in (row for row in rows() if row["kind"] == "molecule"):
         for name in (row["key"], row["name"], *row["synonyms"].split(";")):
             if name.strip():
                 found.setdefault(name.strip(), row["key"])
@@ -39,7 +44,7 @@ def atoms(key):
     >>> atoms("CH3Cl")
     {'C': 1, 'H': 3, 'Cl': 1}
     """
-    (row,) = library.table("species.csv").where("key", key).rows
+    (row,) = (row for row in rows() if row["key"] == key)
     counts: dict[str, int] = {}
     for element, number in re.findall(r"([A-Z][a-z]?)(\d*)", row["formula"]):
         counts[element] = counts.get(element, 0) + int(number or 1)

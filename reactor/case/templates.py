@@ -74,6 +74,12 @@ pressure_drop = "50 mbar"
 [meters]
 alkane = "3 %"
 chlorine = "3 %"
+
+# What `reactor band` varies: factors, up or down, one standard deviation; 1 holds still.
+# [uncertainty]
+# lamp_output = 1.1
+# impurity = 1.5                      # O2 and other traces of the feeds
+# wall_loss = 3
 """)
 
 _TUBE = """\

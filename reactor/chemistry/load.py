@@ -74,7 +74,7 @@ def _read(file, stamp, shipped):
         g=np.array([_numbers(note.get("uncertainty", {}).get("g"))[0] for note in notes]),
         status=tuple(note.get("status", NOT_STATED) for note in notes),
         equations=tuple(reaction.equation for reaction in gas.reactions()),
-        cited=_cited(notes, gas, file), remarks=remarks,
+        cited=_cited(notes, gas, file), remarks=remarks, condensing=_condensing(gas),
     )  # fmt: skip
 
 
@@ -131,9 +131,18 @@ def _kind(species):
 
     if species.name in _known():
         return _known()[species.name]
+    if species.input_data.get("kind") in ("molecule", "radical", "peroxy"):
+        return species.input_data["kind"]
     counts = {element: number for element, number in species.composition.items() if element != "E"}
     electrons = sum(Element(element).atomic_number * number for element, number in counts.items())
     return "radical" if round(electrons - species.charge) % 2 else "molecule"
+
+
+def _condensing(gas):
+    """Return the constants of the vapour pressure of each species that states them."""
+    stated = {s.name: s.input_data["volatility"] for s in gas.species() if "volatility" in s.input_data}
+    names = ("boiling", "critical-temperature", "critical-pressure")
+    return {species: tuple(float(constants[name]) for name in names) for species, constants in stated.items()}
 
 
 def _numbers(value, length=1):
@@ -148,6 +157,7 @@ def _cited(notes, gas, file):
         "rate constants": notes,
         "thermodynamic data": species,
         "transport data": [s["transport"] for s in species if "transport" in s],
+        "boiling points": [s["volatility"] for s in species if "volatility" in s],
     }
     entries = (
         library.Cited(what, entry.get("source", file.name), entry.get("status", NOT_STATED))

@@ -1,6 +1,6 @@
 """A mechanism as one frozen record: species, arrays, provenance, and the properties of a gas made of them."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 
 import numpy as np
@@ -63,8 +63,8 @@ class Mechanism:
     atoms : array (K, E)
         Atoms of each element in each species. [-]
     kinds : tuple of str (K)
-        molecule, radical or peroxy. A species that `data/species.csv` does not know is a radical when its
-        number of electrons is odd, else a molecule.
+        molecule, radical or peroxy. A species that `data/species.csv` does not know is what its own key `kind`
+        in the file says, else a radical when its number of electrons is odd, else a molecule.
     radical : bool array (K,)
         Where the kind is radical.
     tables : Tables
@@ -85,6 +85,8 @@ class Mechanism:
         The reactions in words.
     cited : tuple of library.Cited
         One entry for each distinct kind, source and status of rates, thermo and transport numbers.
+    condensing : dict
+        {species: (boiling point [K], critical temperature [K], critical pressure [Pa])} where the file states them.
     remarks : tuple of str
         What Cantera remarked when it read the file; empty for the mechanism that comes with the program.
     """
@@ -111,6 +113,7 @@ class Mechanism:
     equations: tuple
     cited: tuple
     remarks: tuple
+    condensing: dict = field(default_factory=dict)
 
     def heat_capacity(self, T):
         """

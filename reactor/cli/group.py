@@ -14,10 +14,24 @@ from reactor.cli.common import INPUT, INTERRUPTED, NUMERICAL, RANGE
 from reactor.errors import CaseError, ConvergenceError, RangeError, ReactorError
 
 CODES = ((CaseError, INPUT), (RangeError, RANGE), (ConvergenceError, NUMERICAL), (ReactorError, INPUT))
-MODULES = {"new": "start", "check": "start", "rate": "rate", "photons": "photons", "sources": "start"}  # command -> module
+MODULES = {
+    "new": "start",
+    "check": "start",
+    "rate": "rate",
+    "photons": "photons",
+    "sweep": "study",
+    "band": "maps",
+    "window": "maps",
+    "frontier": "maps",
+    "upset": "upset",
+    "rerun": "study",
+    "merge": "study",
+    "slate": "slate",
+    "sources": "start",
+}  # command -> module
 EPILOG = (
     "Exit codes: 0 done; 1 a limit is violated (results stand); 2 usage or input; 3 numerical failure; "
-    "4 outside the range of the data (with --strict); 5 a balance does not close; 130 interrupted."
+    "4 outside the range of the data (with --strict); 5 a balance does not close; 6 a partial study; 130 interrupted."
 )
 
 

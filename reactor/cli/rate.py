@@ -4,7 +4,7 @@ import sys
 
 import click
 
-from reactor.cli.common import FAIL_ON, OVERRIDE, STRICT, emphasis, exit_code, show, write
+from reactor.cli.common import FAIL_ON, OK, OVERRIDE, STRICT, VIOLATED, emphasis, exit_code, show, write
 
 
 @click.command()
@@ -19,7 +19,10 @@ from reactor.cli.common import FAIL_ON, OVERRIDE, STRICT, emphasis, exit_code, s
     "--profile", metavar="FILE", help="Write the profile along the tube as CSV, units in the header."
 )
 @FAIL_ON
-def rate(case, overrides, strict, as_json, save, profile, fail_on):
+@click.option(
+    "--assert", "claims", metavar="CLAIM", multiple=True, help='Exit 1 where it breaks: "chlorine_slip<2 %".'
+)
+def rate(case, overrides, strict, as_json, save, profile, fail_on, claims):
     """Rate the reactor of a case file.
 
     Prints conversion, products, light, heat, hazards and verdicts of CASE. With --save - or --profile - the
@@ -29,6 +32,7 @@ def rate(case, overrides, strict, as_json, save, profile, fail_on):
     from reactor.rating import rate as run
     from reactor.report.terminal import render
 
+    broken_by = asserted(claims)
     result = run(load(case, overrides, strict))
     if save:
         write(save, result.to_json() + "\n")
@@ -36,7 +40,17 @@ def rate(case, overrides, strict, as_json, save, profile, fail_on):
         from reactor.report.export import profile_csv
 
         write(profile, profile_csv(result))
-    show(
-        result.to_json() + "\n" if as_json else render(result, emphasis()), to_stderr="-" in (save, profile)
-    )
-    sys.exit(exit_code(result, strict, fail_on))
+    show(result.to_json() + "\n" if as_json else render(result, emphasis()), to_stderr="-" in (save, profile))
+    broken = broken_by(result.results)
+    show("".join(f"does not hold: {text}\n" for text in broken), to_stderr=True)
+    sys.exit(exit_code(result, strict, fail_on) or (VIOLATED if broken else OK))
+
+
+def asserted(texts):
+    """Return a function: results -> the claims they break. What makes no sense is refused now."""
+    if not texts:
+        return lambda results: []
+    from reactor.study import broken, claim
+
+    claims = [claim(text) for text in texts]
+    return lambda results: [each.text for each in broken(claims, results)]

@@ -6,6 +6,7 @@ from typing import NamedTuple
 import numpy as np
 
 from reactor import library
+from reactor.chemistry.network.volatility import corresponding_states
 
 COLDEST, HOTTEST = 173.15, 473.15  # K; how far the tables are followed
 POINTS = 1501  # of the grid between them, 0.2 K apart
@@ -80,7 +81,7 @@ def _cubic(x, nodes, values):
     return found
 
 
-def dew_point(fractions, P):
+def dew_point(fractions, P, condensing=None):
     """
     Return where the first liquid or solid forms when a gas is cooled at constant pressure.
 
@@ -94,6 +95,9 @@ def dew_point(fractions, P):
         Mole fractions by species. [-]
     P : float
         Absolute pressure. [Pa]
+    condensing : dict or None
+        Boiling point [K], critical temperature [K] and pressure [Pa] of species that the table does not hold; their
+        vapour pressure is that of corresponding states. [-]
 
     Returns
     -------
@@ -107,10 +111,12 @@ def dew_point(fractions, P):
     5.6 degC, CCl4
     """
     curves = _curves()
-    vapours = {s: y * P for s, y in fractions.items() if y > 1e-12 and s in curves and not curves[s][2]}
-    found = [_first(vapours, "liquid")] if vapours else []
+    more = {s: constants for s, constants in (condensing or {}).items() if s not in curves}
+    present = {s: y * P for s, y in fractions.items() if y > 1e-12 and (s in more or s in curves)}
+    vapours = {s: p for s, p in present.items() if s in more or not curves[s][2]}
+    found = [_first(vapours, "liquid", more)] if vapours else []
     crystals = [s for s, y in fractions.items() if y > 1e-12 and s in curves and curves[s][2]]
-    found += [_first({s: fractions[s] * P}, "solid") for s in crystals]
+    found += [_first({s: fractions[s] * P}, "solid", {}) for s in crystals]
     found = [dew for dew in found if dew is not None]
     return max(found, key=lambda dew: dew.temperature) if found else None
 
@@ -122,9 +128,17 @@ def _grid():
     return T, {species: 1 / vapour_pressure(species, T) for species in _curves()}
 
 
-def _first(partial, phase):
+@cache
+def _estimated(constants):
+    """Return 1/vapour pressure [1/Pa] on the grid by corresponding states."""
+    boiling, hottest, highest = constants
+    return 1 / corresponding_states(boiling, hottest, highest, _grid()[0])
+
+
+def _first(partial, phase, more):
     """Return the `Dew` of the species with these partial pressures in one ideal phase, else None."""
     T, inverse = _grid()
+    inverse = inverse | {s: _estimated(constants) for s, constants in more.items() if s in partial}
     excess = np.log(sum(p * inverse[s] for s, p in partial.items()))  # falls with T
     if excess[0] < 0:
         return None

@@ -122,7 +122,7 @@ def _change(book, x, end, T, P, preheat, premixed, rank):
     if now >= 1 or now == end:
         return None
     start, stop = now, end
-    for points in (201, 101):
+    for points in (51, 41, 21):
         ys = np.linspace(start, stop, points)
         moved = x * ((1 - ys) / (1 - now))[:, None]
         moved[:, place] = ys

@@ -104,6 +104,53 @@ def ignition_temperatures(oxidant="Cl2"):
     }
 
 
+def air_limits():
+    """
+    Return the explosion limits of each fuel in air, {fuel: (lower, upper, Cited)} as mole fractions.
+
+    Examples
+    --------
+    >>> low, high, cited = air_limits()["CH4"]
+    >>> print(f"{low:.3f} {high:.2f} {cited.status}")
+    0.044 0.17 seen
+    """
+    table = library.table("hazards/air_limits.csv")
+    words = [table.text(c) for c in ("fuel", "source", "status")]
+    numbers = [table.si(c) for c in ("lower", "upper")]
+    return {
+        fuel: (float(low), float(high), Cited(f"limits of {fuel} in air", source, status))
+        for fuel, source, status, low, high in zip(*words, *numbers, strict=True)
+    }
+
+
+def leak_limit(fractions):
+    """
+    Return the lower limit in air of the fuels in a gas by Le Chatelier's rule, and their share of the gas.
+
+    Parameters
+    ----------
+    fractions : dict of float
+        Mole fractions by species. [-]
+
+    Returns
+    -------
+    lower, share : float
+        Mole fraction of fuel in air at the limit (nan without a listed fuel); of fuel in the gas. [-]
+
+    Examples
+    --------
+    >>> lower, share = leak_limit({"CH4": 0.4, "C3H8": 0.4, "N2": 0.2})
+    >>> print(f"{lower:.4f} {share:.1f}")
+    0.0245 0.8
+    """
+    limits = air_limits()
+    fuels = {name: y for name, y in fractions.items() if name in limits and y > 0}
+    share = sum(fuels.values())
+    if share <= 0:
+        return float("nan"), 0.0
+    return share / sum(y / limits[name][0] for name, y in fuels.items()), share
+
+
 def hot_surface_limit(fuels):
     """
     Return how hot a surface touched by fuel and chlorine may be planned.

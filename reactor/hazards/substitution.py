@@ -22,6 +22,7 @@ import numpy as np
 from reactor import library
 from reactor.errors import RangeError
 
+GAS_CONSTANT = 8.31446261815324  # J/mol/K, exact
 COLDEST, FITTED, HOTTEST, STEP = 200.0, 1700.0, 3500.0, 10.0  # K; above FITTED the heat capacity is held
 
 
@@ -194,9 +195,9 @@ def temperature_of(grid, table, H):
     return grid[low] + (H - table[here, low]) / slope
 
 
-def adiabatic_temperature(rungs, x, T, shared=True):
+def adiabatic_temperature(rungs, x, T, shared=True, volume=False):
     """
-    Return the temperature after complete substitution at constant pressure, the hotter of the two fillings.
+    Return the temperature after complete substitution, the hotter of the two fillings.
 
     Hydrogen takes its chlorine first. Up to 1700 K the enthalpies are those of the mechanism; above, the heat
     capacity of 1700 K is held (the figure then only says "very hot").
@@ -211,6 +212,8 @@ def adiabatic_temperature(rungs, x, T, shared=True):
         Temperature before the reaction. [K]
     shared : bool
         Try the filling `shared` too; without it the chlorine already bound stays where it is. [-]
+    volume : bool
+        At constant volume instead of constant pressure; the number of molecules stays. [-]
 
     Returns
     -------
@@ -232,6 +235,8 @@ def adiabatic_temperature(rungs, x, T, shared=True):
     rest[:, rungs.chlorine] -= to_hydrogen + used
     rest[:, rungs.acid] += 2 * to_hydrogen + used
     rest = rest @ rungs.enthalpy.T
+    if volume:
+        rest, H = rest - GAS_CONSTANT * rungs.grid, H - GAS_CONSTANT * T
     added = rungs.added.product_enthalpy(x, used / np.maximum(sites, 1e-300))
     T_ad = temperature_of(rungs.grid, rest + added, H)
     if not shared:

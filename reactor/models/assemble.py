@@ -6,6 +6,7 @@ from typing import NamedTuple
 
 import numpy as np
 
+from reactor.errors import CaseError
 from reactor.kernel.light import Beam
 from reactor.kernel.plugflow import Budget, Section
 from reactor.stream import Stream, mix
@@ -40,6 +41,12 @@ def streams(case, gas):
 
 def _on(gas, moles):
     flow = np.zeros(len(gas.species))
+    missing = [species for species in moles if species not in gas.index]
+    if missing:
+        raise CaseError(
+            f"{gas.path}: the mechanism holds no {', '.join(missing)}, which is fed; make one for this feed with: "
+            "reactor slate CASE --write FILE"
+        )
     for species, value in moles.items():
         flow[gas.index[species]] = value
     return flow

@@ -37,7 +37,7 @@ def solve(case, plant, look_further=True):
     ConvergenceError
         When the kernel's budget is used up, or no coolant temperature fits.
     """
-    gas, tube = plant.gas, _tube(case, plant)
+    gas, tube = plant.gas, tube_of(case, plant)
     inlet = assemble.mixed_inlet(case, gas)
     mass_flow = inlet.mass(gas) / case.vessel.parallel
     n = inlet.moles / inlet.mass(gas)
@@ -52,7 +52,8 @@ def solve(case, plant, look_further=True):
     return _profile(case, gas, tube, inlet, path, remarks)
 
 
-def _tube(case, plant):
+def tube_of(case, plant):
+    """Return one tube as the kernel wants it."""
     gas, light, wall = plant.gas, plant.light, plant.wall
     sign = -1.0 if case.cooling.mode == "counter-current" else 1.0
     rates = Rates(gas.tables, gas.photolysis, gas.wall)

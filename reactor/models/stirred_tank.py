@@ -33,7 +33,7 @@ def solve(case, plant, look_further=True):
     """
     gas = plant.gas
     feed = assemble.mixed_feed(case, gas)
-    tank = _tank(case, plant, feed, plant.even)
+    tank = tank_of(case, plant, feed)
     budget = assemble.budget(case)
     low, high = _reach(tank, feed, gas)
     states = steady_states(tank, low, high, budget)
@@ -41,10 +41,11 @@ def solve(case, plant, look_further=True):
     return _profile(case, gas, tank, feed, states, number, remark)
 
 
-def _tank(case, plant, feed, even=None):
+def tank_of(case, plant, feed):
+    """Return the tank as the kernel wants it."""
     gas, light, wall, share = plant.gas, plant.light, plant.wall, 1.0 / case.vessel.parallel
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
-    beam = assemble.beams(light, case.chemistry.photolysis_rate, even)[0]
+    beam = assemble.beams(light, case.chemistry.photolysis_rate, plant.even)[0]
     beam = beam._replace(fixed=case.chemistry.photolysis_rate)
     return Tank(rates, gas.molar_mass, plant.wall_loss, gas.index["Cl2"], gas.start, light.area * case.vessel.length,
                 case.vessel.length, case.vessel.pressure, feed.moles * share, feed.enthalpy(gas) * share, beam,

@@ -4,7 +4,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from reactor.hazards import corners, dewpoint, exotherm, explosive
+from reactor.hazards import corners, dewpoint, exotherm, explosive, materials
 from reactor.hazards.cautions import block
 from reactor.models import assemble
 from reactor.models.chain import dark_chain
@@ -14,6 +14,7 @@ from reactor.result import quantity
 RESPONSE = 10.0  # s; the plant's response for which the light-off temperature is given
 DEW_STATIONS = 40
 ARCS = "mercury"
+LEAST_PHOSGENE = 1e-9  # mole fraction from which phosgene is spoken of
 
 
 class Dangers(NamedTuple):
@@ -157,11 +158,25 @@ def dew_margin(profile, gas):
     for i in np.unique(np.linspace(0, len(profile.z) - 1, DEW_STATIONS).round().astype(int)):
         share = profile.moles[i] / profile.moles[i].sum()
         mixture = dict(zip(gas.species, share, strict=True))
-        dew = dewpoint.dew_point(mixture, profile.pressure[i])
+        dew = dewpoint.dew_point(mixture, profile.pressure[i], gas.condensing)
         coldest = min(profile.temperature[i], profile.coolant[i])
         if dew is not None:
             margins.append(coldest - dew.temperature)
     return min(margins, default=None)
+
+
+def phosgene(profile, gas):
+    """Return a remark with the exposure figures of phosgene where the outlet holds it, else nothing."""
+    if "COCl2" not in gas.index:
+        return ()
+    share = profile.outlet.moles[gas.index["COCl2"]] / profile.outlet.moles.sum()
+    if share < LEAST_PHOSGENE:
+        return ()
+    figures = ", ".join(
+        f"{entry.figure} {1e6 * entry.fraction:.3g} ppm ({entry.basis or 'no time stated'}; {entry.cited.status})"
+        for entry in materials.exposures(["COCl2"])
+    )
+    return (f"phosgene in the gas that leaves: {1e6 * share:.3g} ppm by mol, {figures}",)
 
 
 def case_flags(case, profile, gas, results, plant):

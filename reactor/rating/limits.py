@@ -8,6 +8,7 @@ from reactor.rating.plant import plant as equipment_of
 from reactor.result import CAUTION, FAIL, NOT_ASSESSED, PASS, Verdict
 
 DEW_MARGIN = 10.0  # K; a surface closer to the dew point is near enough to be wet
+SKIN_FUELS = ("CH4", "C2H6", "C3H8", "CH3Cl", "CH2Cl2", "C2H5Cl")  # that have an ignition temperature on record
 
 
 def slip(case, results):
@@ -55,7 +56,7 @@ def sleeve_skin(case, plant, profile, results):
     fuels = [
         s
         for s, n in zip(plant.gas.species, profile.fed, strict=True)
-        if n > 1e-3 * profile.fed.sum() and s in ("CH4", "C2H6", "C3H8", "CH3Cl", "CH2Cl2", "C2H5Cl")
+        if n > 1e-3 * profile.fed.sum() and s in SKIN_FUELS
     ]
     limit = case.limits.sleeve_skin or materials.hot_surface_limit(fuels)
     figure = f"{skin - 273.15:.0f} degC, {low - 273.15:.0f} degC at 20 % flow"

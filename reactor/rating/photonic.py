@@ -4,7 +4,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor import chemistry, photons
+from reactor import photons
 from reactor.errors import CaseError
 from reactor.models import SOLVERS, pools
 from reactor.models.assemble import mixed_feed
@@ -13,7 +13,7 @@ from reactor.photons.account import by_band
 from reactor.photons.energy import photon_energy, photons_per_joule
 from reactor.photons.lamps import kinds
 from reactor.rating import account, figures
-from reactor.rating.plant import lamps, located, plant, shape, sleeve_of
+from reactor.rating.plant import lamps, located, mechanism, plant, shape, sleeve_of
 
 AVOGADRO = 6.02214076e23
 GAPS = (0.005, 0.010, 0.025, 0.050, 0.100)  # m
@@ -42,9 +42,10 @@ def photonic(case):
     """
     if not case.lamp:
         raise CaseError(f"{case.name}: lamp: a photon report needs a [[lamp]] entry")
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    gas = mechanism(case)
     light = lamps(case)
     equipment, profile, mixed = pools.settle(case, plant(case, gas, light), SOLVERS[case.vessel.kind])
+    gas = equipment.gas
     feed = mixed_feed(case, gas)
     results = figures.headline(case, equipment, profile, feed)
     inlet = profile.concentrations[0], float(profile.temperature[0])

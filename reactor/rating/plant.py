@@ -4,14 +4,39 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor import heat, photons
+from reactor import chemistry, heat, photons
 from reactor.case import Sleeve
+from reactor.chemistry import network
 from reactor.chemistry import wall as wall_chemistry
 from reactor.models.assemble import Plant, mixed_feed
 
 BODY = 0.01  # m, radius of a lamp outside the gas where it is not stated: an arc or phosphor tube of 20 mm
+MOST = 120  # species of a mechanism that is made unasked
+HOTTER = 150.0  # K; how much hotter than its feed a made mechanism is weighed where no limit is stated
 TURNDOWN = 0.2  # share of full flow at which the sleeve skin is asked for again: it may be hotter
 THREAD = 1e-4  # of the shell: the sleeve of a tank that has none, of no volume to speak of
+
+
+def mechanism(case):
+    """
+    Return the `Mechanism` of a case: its own, else the small one, else one made for its feed.
+
+    One is made where the feed holds alkanes that the small one does not attack.
+    """
+    if case.chemistry.mechanism:
+        return chemistry.mechanism(case.path(case.chemistry.mechanism))
+    moles: dict = {}
+    for stream in case.feed.values():
+        for species, amount in stream.moles.items():
+            moles[species] = moles.get(species, 0.0) + amount
+    if not moles.get("Cl2") or not network.beyond_small(moles):
+        return chemistry.mechanism()
+    coldest = min(stream.temperature for stream in case.feed.values())
+    fed = {species: amount for species, amount in moles.items() if network.find(species)}
+    vessels = ("tube",) if case.vessel.kind == "plug flow" else ("tank",)
+    span = coldest, case.limits.hottest or coldest + HOTTER
+    ratio = sum(fed.values()) / moles["Cl2"]
+    return chemistry.mechanism(network.mechanism_file(fed, ratio, span, most=MOST, vessels=vessels))
 
 
 def plant(case, gas, light, U_factor=1.0, flow=1.0):

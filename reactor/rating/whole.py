@@ -3,14 +3,15 @@
 from reactor import chemistry
 from reactor.models import SOLVERS, pools
 from reactor.models.assemble import mixed_feed
-from reactor.rating import account, figures, hazard, identity, judge
+from reactor.rating import account, figures, hazard, identity, judge, surroundings
 from reactor.rating.bands import bands
 from reactor.rating.closures import closures
-from reactor.rating.plant import lamps, plant
+from reactor.rating.plant import lamps, mechanism, plant
+from reactor.rating.varied import NOMINAL, equipped
 from reactor.result import Result
 
 
-def rate(case):
+def rate(case, factors=NOMINAL):
     """
     Take a checked case through the whole calculation.
 
@@ -18,6 +19,8 @@ def rate(case):
     ----------
     case : Case
         From `reactor.load`.
+    factors : Factors
+        Moves uncertain data; the band of U, a part of the uncertainty itself, is then left out.
 
     Returns
     -------
@@ -28,18 +31,20 @@ def rate(case):
     ConvergenceError
         When a solver's budget is used up; says where it stopped and what to try.
     """
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
-    light = lamps(case)
-    equipment = plant(case, gas, light)
+    gas = mechanism(case)
+    case, equipment = equipped(case, gas, factors)
     # chemistry, light and heat together; with local radical pools also the profile of one mixed pool
     equipment, profile, mixed = pools.settle(case, equipment, SOLVERS[case.vessel.kind])
+    gas, light = equipment.gas, equipment.light
     feed = mixed_feed(case, gas)
     dangers = hazard.assess(case, equipment, profile, feed)
     results = figures.headline(case, equipment, profile, feed) | dangers.results
-    results = bands(case, equipment, results) | figures.bracket(profile, mixed, gas)
+    results = bands(case, equipment, results) if factors == NOMINAL else results
+    results |= figures.bracket(profile, mixed, gas)
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
     gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
-    verdicts = judge.verdicts(case, equipment, profile, results, gaps, dangers)
+    around = surroundings.assess(case, gas, profile)
+    verdicts = (*judge.verdicts(case, equipment, profile, results, gaps, dangers), *around)
     return Result(
         title=case.title,
         revision=case.about.revision,
@@ -51,7 +56,8 @@ def rate(case):
         assumed=identity.assumed(case),
         deviations=identity.deviations(case),
         cautions=dangers.cautions,
-        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks),
+        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
+                 *hazard.phosgene(profile, gas)),
         sources=identity.sources(equipment, dangers.cited),
         ledger=() if typed else account.light_ledger(light, profile, case),
         streams=account.streams(profile, gas),
@@ -63,7 +69,7 @@ def rate(case):
 
 def cited(case):
     """Return what a case relies on, without solving it, and its rate constants, the most uncertain first."""
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    gas = mechanism(case)
     equipment = plant(case, gas, lamps(case))
     return identity.relied_on(equipment, hazard.citations(case, gas)), identity.rates(gas)
 

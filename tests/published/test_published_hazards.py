@@ -192,6 +192,19 @@ def test_a_vapour_pressure_between_the_points_is_that_of_the_package(species, ce
     assert dewpoint.vapour_pressure(species, celsius + 273.15) == pytest.approx(expected, rel=0.01)
 
 
+@pytest.mark.parametrize(
+    ("fuel", "number"),
+    [("CH4", "74-82-8"), ("C2H6", "74-84-0"), ("C3H8", "74-98-6"), ("CH3Cl", "74-87-3"),
+     ("C2H5Cl", "75-00-3")],
+)  # fmt: skip
+def test_explosion_limits_in_air_are_those_of_the_package(fuel, number):
+    # Source: IEC 60079-20-1 (2010) in the package chemicals (seen).
+    chemicals = pytest.importorskip("chemicals")
+    low, high, _ = materials.air_limits()[fuel]
+    assert low == pytest.approx(chemicals.LFL(CASRN=number, method="IEC 60079-20-1 (2010)"), abs=1e-4)
+    assert high == pytest.approx(chemicals.UFL(CASRN=number, method="IEC 60079-20-1 (2010)"), abs=1e-4)
+
+
 @pytest.mark.parametrize(("fuel", "number"), [("CH4", "74-82-8"), ("C2H6", "74-84-0"), ("C3H8", "74-98-6")])
 def test_ignition_temperatures_in_air_are_those_of_the_package(fuel, number):
     # Source: IEC 60079-20-1 (2010) in the package chemicals (seen).

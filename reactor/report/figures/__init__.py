@@ -1,1 +1,1 @@
-"""Figures: each takes a record and draws it; matplotlib is loaded inside."""
+"""Figures, drawn with Matplotlib from saved results; nothing here solves anything."""
