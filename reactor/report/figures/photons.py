@@ -33,9 +33,9 @@ def draw(record, path):
         raise CaseError(f"--figure needs matplotlib; install it with: {how}") from None
     picture = Figure(figsize=(10, 7.4), layout="constrained")
     if record["along"]["z"]:
-        panels, places = (spectrum, shares, along, bands), "ab;cd"
+        panels, places = [spectrum, shares, along, bands], "ab;cd"
     else:
-        panels, places = (spectrum, shares, bands), "ab;cc"
+        panels, places = [spectrum, shares, bands], "ab;cc"
     axes = picture.subplot_mosaic(places)
     for panel, ax in zip(panels, axes.values(), strict=True):
         panel(record, ax)
