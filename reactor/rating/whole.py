@@ -40,7 +40,7 @@ def rate(case, factors=NOMINAL):
     results = figures.headline(case, equipment, profile, feed) | dangers.results
     results = bands(case, equipment, results) if factors == NOMINAL else results
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
-    gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
+    gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.vessels)
     verdicts = judge.verdicts(case, equipment, profile, results, gaps, dangers)
     return Result(
         title=case.title,
