@@ -1,0 +1,5 @@
+"""Targets in, equipment out: find inputs for wanted results, and say how many tubes, stages and watts that takes."""
+
+from reactor.sizing.run import PARTS, PLAIN, Options, run
+
+__all__ = ["PARTS", "PLAIN", "Options", "run"]
