@@ -183,7 +183,7 @@ def depth(d):
     c = d.x * d.case.vessel.pressure / (GAS_CONSTANT * d.inlet)
     tau = d.sigma * AVOGADRO * c * d.gap
     z, photons = (d.result.profile[name] for name in ("z [m]", "photons_absorbed [mol/s]"))
-    into = next((row["photons"] for row in d.result.ledger if row["name"] == "into gas"), None)
+    into = next((row["photons"]["value"] for row in d.result.ledger if row["name"] == "into gas"), None)
     lit = max((lamp.lit_to or d.case.vessel.length) for lamp in d.case.lamp)
     at = next((i for i, place in enumerate(z) if place > 1e-3 * lit), None)
     model = photons[at] / z[at] * lit / into if at and into and len({lamp.lit_to for lamp in d.case.lamp}) == 1 else None
@@ -206,8 +206,8 @@ def light(d):
         rule = "J = 4 kt/(b t)^2 (c^-1/2 - c0^-1/2)^2"
     J = root**2
     photons = J * d.volume / (d.sigma * AVOGADRO * d.gap)
-    into = next((row for row in d.result.ledger if row["name"] == "into gas" and row["photons"]), None)
-    energy = into["power"] / into["photons"] if into else 3.28e5
+    into = next((row for row in d.result.ledger if row["name"] == "into gas" and row["photons"]["value"]), None)
+    energy = into["power"]["value"] / into["photons"]["value"] if into else 3.28e5
     return _line("light into the gas", f"{rule} = {J:.3g} 1/s, W = J V E/(sigma N gap)", photons * energy,
                  d.result["light_into_gas"], "W",
                  "one radical, one temperature, thin gas: expect a factor 3; chloromethyl radicals ask for more, heat for less")

@@ -1,6 +1,7 @@
 """The whole calculation, read from the top."""
 
 from reactor import chemistry
+from reactor.case.loops import NAME as RECYCLE
 from reactor.models import SOLVERS
 from reactor.models.assemble import mixed_feed
 from reactor.rating import account, figures, hazard, identity, judge
@@ -53,7 +54,7 @@ def rate(case, factors=NOMINAL):
         assumed=identity.assumed(case),
         deviations=identity.deviations(case),
         cautions=dangers.cautions,
-        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
+        remarks=(*open_loop(case), *profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
                  *hazard.phosgene(profile, gas)),
         sources=identity.sources(equipment, dangers.cited),
         ledger=() if typed else account.light_ledger(light, profile, case),
@@ -61,6 +62,16 @@ def rate(case, factors=NOMINAL):
         numerics=profile.cost,
         identity=identity.identity(case, gas),
         profile=account.columns(profile, gas, dangers.classes),
+    )
+
+
+def open_loop(case):
+    """Say that a recycle is not closed, where the case has one and its stream is not among the feeds."""
+    if case.recycle is None or RECYCLE in case.feed:
+        return ()
+    return (
+        "the recycle is NOT closed here: the feeds are taken as typed, without the inerts and products that "
+        "come back",
     )
 
 

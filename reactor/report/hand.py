@@ -24,3 +24,10 @@ def render(lines, emphasis=str):
         rows.append(paragraph(one.formula + (f" ({one.note})" if one.note else ""), "    "))
     rows += ["", paragraph("The constants are remembered ones, not those of the model. Ratio = full model over hand.")]
     return section("BY HAND", rows if lines else ["no rule fits: the feed has no methane, ethane or propane"], emphasis)
+
+
+def box(case, result, emphasis=str):
+    """Return the hand box of a rated case."""
+    from reactor.rating.hand import hand
+
+    return render(hand(case, result), emphasis)

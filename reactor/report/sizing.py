@@ -169,7 +169,8 @@ def kinds(one, emphasis):
     """Print stirred tank, tanks in series and plug flow side by side."""
     rows = [f"{'kind':<22}{'slip':>10}{'poly mol':>10}{'hottest C':>10}{'mains kW for the same slip':>28}"]
     for k in one["rows"]:
-        need = "out of reach" if k["electrical_same_slip"] is None else figure(k["electrical_same_slip"] / 1e3)
+        need = "not searched" if not k["searched"] else "out of reach" if k["electrical_same_slip"] is None else \
+            figure(k["electrical_same_slip"] / 1e3)
         rows.append(f"{k['kind']:<22}{per_cent(k['slip']):>10}{per_cent(k['poly']):>10}{degrees(k['hottest']):>10}{need:>28}")
     rows += [paragraph(text, "- ") for text in one["remarks"]]
     return section("TANK, TANKS IN SERIES, TUBE: same litres, same lamps", rows, emphasis)

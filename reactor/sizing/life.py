@@ -24,10 +24,10 @@ def at_flow(case, factor):
 
 def turndown(case, probe, result, options):
     """Return slip, temperatures and skin from 40 to 110 % flow."""
-    rows = []
+    rows, warm = [], loop.Warm()
     for factor in FLOWS:
         try:
-            found = loop.probe(at_flow(case, factor))
+            found = loop.probe(at_flow(case, factor), warm)
         except ReactorError:
             continue
         rows.append({"flow": factor, "slip": found["chlorine_slip"], "poly": found["poly_share_mol"],
@@ -75,10 +75,10 @@ def ageing(case, probe, result, options):
 
 def slip_of_light(case):
     """Return the slip as a function of the share of fresh light: rated at `SHARES`, straight in logarithms between."""
-    known = []
+    known, warm = [], loop.Warm()
     for share in SHARES:
         try:
-            known.append((math.log(share), math.log(loop.probe(of_fresh(case, share))["chlorine_slip"])))
+            known.append((math.log(share), math.log(loop.probe(of_fresh(case, share), warm)["chlorine_slip"])))
         except ReactorError:
             continue
     x, y = (np.array(column) for column in zip(*sorted(known), strict=True))

@@ -31,24 +31,26 @@ def lamp_curve(case, probe, result, options):
     if not case.lamp:
         return {"curve": [], "points": [], "remark": "the case has no lamp"}
     design = _row(probe)
-    rows = sorted([*_walk(case, design, 1.0), design, *_walk(case, design, -1.0)], key=lambda row: row["electrical"])
+    warm = loop.Warm()
+    rows = sorted([*_walk(case, design, 1.0, warm), design, *_walk(case, design, -1.0, warm)],
+                  key=lambda row: row["electrical"])
     for row, other in zip(rows, rows[1:], strict=False):
         if other["slip"] < row["slip"]:
             row["law"] = -math.log(other["electrical"] / row["electrical"]) / math.log(other["slip"] / row["slip"])
     points = [_point("end of life (design)", case, probe)]
     for name, share in (("fresh lamp", 1.0), ("lamp at 70 % of fresh", 0.7)):
         aged = of_fresh(case, share)
-        points.append(_point(name, aged, loop.probe(aged)))
+        points.append(_point(name, aged, loop.probe(aged, warm)))
     return {"curve": rows, "points": points}
 
 
-def _walk(case, design, direction):
+def _walk(case, design, direction, warm):
     """Return further rows, half a decade of slip apart, to more (1) or less (-1) light than the design's."""
     rows, factor, law = [design], 1.0, 1.0
     while len(rows) <= AT_MOST and not (rows[-1]["slip"] < LOWEST if direction > 0 else rows[-1]["slip"] > HIGHEST):
         move = direction * HALF * min(max(law, 0.1), 3.0)
         try:
-            new = _row(loop.probe(dimmed(case, factor * math.exp(move))))
+            new = _row(loop.probe(dimmed(case, factor * math.exp(move)), warm))
         except ReactorError:
             break
         change = direction * math.log(rows[-1]["slip"] / max(new["slip"], 1e-300))
@@ -86,11 +88,11 @@ def needed(case, slip, start=1.0, most=8):
     most : int
         Ratings at most; the answer holds to a few parts in ten thousand. [-]
     """
-    probes = {}
+    probes, warm = {}, loop.Warm()
 
     def trial(x):
         try:
-            probes[x] = loop.probe(dimmed(case, math.exp(x)))
+            probes[x] = loop.probe(dimmed(case, math.exp(x)), warm)
         except ReactorError as error:
             raise search.Blocked(str(error)) from None
         miss = math.log(max(probes[x]["chlorine_slip"], 1e-300) / slip)

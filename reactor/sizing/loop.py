@@ -36,6 +36,11 @@ def probe(case, warm=None):
     return Probe(case) if case.recycle is None else close(case, warm)
 
 
+def closed(case):
+    """Return the case with its loop closed: the recycle stands among its feeds, the alkane stream is the fresh gas."""
+    return case if case.recycle is None else close(case).case
+
+
 def close(case, warm=None):
     """
     Return the `Probe` of the case with its loop closed.

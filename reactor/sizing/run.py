@@ -45,10 +45,11 @@ def run(case, find=(), wanted=(), keeps=(), between=None, parts=PLAIN, options=O
     found = size(case, find, wanted, keeps, between)
     closed = found.probe.case
     result = rate(closed)
-    block = {"found": found.record} | tables(found.case, found.probe, result, parts, options)
+    asked = parts if found.record["solved"] else [part for part in parts if part not in PLAIN]
+    block = {"found": found.record} | tables(found.case, found.probe, result, asked, options)
     if closed.recycle is not None:
         block["loop"] = loop.record(found.probe)
-    return replace(result, sizing=block, deviations=result.deviations)
+    return replace(result, sizing=block, identity=result.identity | {"case": found.case.hash()})
 
 
 def tables(case, probe, result, parts, options):

@@ -11,6 +11,7 @@ from reactor.sizing.data import practice
 from reactor.sizing.light import needed
 
 NUMBERS = (1, 3, 10)  # tanks that share the volume
+SEARCHED = (1, 3, None)  # where the lamp power for the same slip is searched; None is plug flow
 
 
 def remade(case, edit):
@@ -77,12 +78,13 @@ def kinds(case, probe, result, options):
             found = loop.probe(other)
         except ReactorError as error:
             rows.append({"kind": name, "slip": None, "poly": None, "hottest": None, "electrical": None,
-                         "electrical_same_slip": None, "why": str(error)})
+                         "electrical_same_slip": None, "searched": False, "why": str(error)})
             continue
-        share, there = needed(other, slip) if case.lamp else (None, None)
+        share, there = needed(other, slip) if case.lamp and number in SEARCHED else (None, None)
         rows.append({"kind": name, "slip": found["chlorine_slip"], "poly": found["poly_share_mol"],
                      "hottest": found["temperature_hottest"], "electrical": found["light_electrical"],
                      "electrical_same_slip": None if share is None else there["light_electrical"],
+                     "searched": bool(case.lamp) and number in SEARCHED,
                      "poly_same_slip": None if share is None else there["poly_share_mol"],
                      "worst_chlorine": float(found.profile.concentrations[:, found.gas.index["Cl2"]].max()), "why": ""})
     return {"slip": slip, "volume": probe.profile.volume, "rows": rows, "remarks": words(rows, slip)}
