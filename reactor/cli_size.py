@@ -12,24 +12,57 @@ WORDS = "light tubes loads trade stages kinds lamps gaps turndown ageing"
 
 @click.command()
 @click.argument("case")
-@click.option("--find", "find", metavar="KEY", multiple=True,
-              help="An input that may be changed, like vessel.length or lamp.power; may be repeated.")
-@click.option("--for", "wanted", metavar="GOAL", multiple=True,
-              help='What must come out, like "chlorine_slip=1 %"; as many as unknowns.')
-@click.option("--keep", "keeps", metavar="GOAL", multiple=True,
-              help='What must hold, like "temperature_hottest<120 degC"; may be repeated.')
+@click.option(
+    "--find",
+    "find",
+    metavar="KEY",
+    multiple=True,
+    help="An input that may be changed, like vessel.length or lamp.power; may be repeated.",
+)
+@click.option(
+    "--for",
+    "wanted",
+    metavar="GOAL",
+    multiple=True,
+    help='What must come out, like "chlorine_slip=1 %"; as many as unknowns.',
+)
+@click.option(
+    "--keep",
+    "keeps",
+    metavar="GOAL",
+    multiple=True,
+    help='What must hold, like "temperature_hottest<120 degC"; may be repeated.',
+)
 @click.option("--between", metavar="LOW..HIGH", help='Range of a single unknown, like "0.5 m..8 m".')
-@click.option("--show", "parts", metavar="WHAT", multiple=True,
-              help=f"Tables to add: {', '.join(WORDS.split())}, or all; light, tubes and loads always come.")
-@click.option("--cap", metavar="SHARE", default="10 %", show_default=True,
-              help="With stages: mole fraction of chlorine right after an injection.")
-@click.option("--cool-to", metavar="TEMPERATURE", help="With stages: temperature of the gas before each injection.")
-@click.option("--life", metavar="TIME", help='With ageing: hours until the lamp is at end_of_life, like "8000 h".')
+@click.option(
+    "--show",
+    "parts",
+    metavar="WHAT",
+    multiple=True,
+    help=f"Tables to add: {', '.join(WORDS.split())}, or all; light, tubes and loads always come.",
+)
+@click.option(
+    "--cap",
+    metavar="SHARE",
+    default="10 %",
+    show_default=True,
+    help="With stages: mole fraction of chlorine right after an injection.",
+)
+@click.option(
+    "--cool-to", metavar="TEMPERATURE", help="With stages: temperature of the gas before each injection."
+)
+@click.option(
+    "--life", metavar="TIME", help='With ageing: hours until the lamp is at end_of_life, like "8000 h".'
+)
 @click.option("--deposit", metavar="SHARE", help='With ageing: light lost to deposit in a week, like "2 %".')
 @click.option("--write", metavar="FILE", help="Write the sized case as a new case file.")
-@click.option("--set", "overrides", metavar="KEY=VALUE", multiple=True, help="Override one entry of the case first.")
+@click.option(
+    "--set", "overrides", metavar="KEY=VALUE", multiple=True, help="Override one entry of the case first."
+)
 @click.option("--strict", is_flag=True, help="Refuse every default that the case file does not state.")
-@click.option("--json", "as_json", is_flag=True, help="Print the rated result with its block `sizing` as JSON.")
+@click.option(
+    "--json", "as_json", is_flag=True, help="Print the rated result with its block `sizing` as JSON."
+)
 @click.option("--save", metavar="FILE", help="Save the rated result with its block `sizing` as JSON.")
 def size(case, find, wanted, keeps, between, parts, overrides, strict, as_json, save, write, **more):
     """Find inputs of a CASE for wanted results, and print what has to be built.
@@ -44,7 +77,15 @@ def size(case, find, wanted, keeps, between, parts, overrides, strict, as_json, 
     loaded = load(case, overrides, strict)
     options, chosen = _options(more), _parts(parts)
     try:
-        result = run(loaded, find, goals.read(wanted, "--for"), goals.read(keeps, "--keep"), _range(between), chosen, options)
+        result = run(
+            loaded,
+            find,
+            goals.read(wanted, "--for"),
+            goals.read(keeps, "--keep"),
+            _range(between),
+            chosen,
+            options,
+        )
     except goals.Contradiction as error:
         click.echo(f"reactor: {error}", err=True)
         sys.exit(1)
@@ -71,8 +112,12 @@ def _options(texts):
     from reactor.sizing import Options
     from reactor.units import kinds
 
-    known = {"cap": ("--cap", kinds.FRACTION.within(1e-3, 0.9, '"10 %"')), "cool_to": ("--cool-to", kinds.TEMPERATURE),
-             "life": ("--life", kinds.TIME), "deposit": ("--deposit", kinds.FRACTION.within(0.0, 0.9, '"2 %"'))}
+    known = {
+        "cap": ("--cap", kinds.FRACTION.within(1e-3, 0.9, '"10 %"')),
+        "cool_to": ("--cool-to", kinds.TEMPERATURE),
+        "life": ("--life", kinds.TIME),
+        "deposit": ("--deposit", kinds.FRACTION.within(0.0, 0.9, '"2 %"')),
+    }
     found = {}
     for name, (option, kind) in known.items():
         if texts[name] is not None:
@@ -80,8 +125,12 @@ def _options(texts):
                 found[name] = kind.read(texts[name]).si
             except ValueError as error:
                 raise CaseError(f"{option} {error}") from None
-    return Options(cap=found["cap"], between_stages=found.get("cool_to"), life=found.get("life"),
-                   deposit=found.get("deposit"))
+    return Options(
+        cap=found["cap"],
+        between_stages=found.get("cool_to"),
+        life=found.get("life"),
+        deposit=found.get("deposit"),
+    )
 
 
 def _range(text):

@@ -23,4 +23,5 @@ from reactor.case.templates import template
 from reactor.case.writer import dump
 
 __all__ = ["About", "Assumed", "Case", "Chemistry", "Cooling", "Feed", "Inject", "Lamp", "Limits", "Meters"]
-__all__ += ["Recycle", "Sleeve", "Solver", "Targets", "Vessel", "Window", "changed", "dump", "load", "loads", "template"]
+__all__ += ["Recycle", "Sleeve", "Solver", "Targets", "Vessel", "Window"]
+__all__ += ["changed", "dump", "load", "loads", "template"]

@@ -42,12 +42,21 @@ def _shares(draft, raw):
 
 def _stream(draft, typed, feed):
     """Return the name of the stream that the recycle joins: the one that brings the alkane."""
-    bringing = [name for name, one in feed.items() if any(species.is_alkane(s) and n > 0 for s, n in one.moles.items())]
+    bringing = [
+        name
+        for name, one in feed.items()
+        if any(species.is_alkane(s) and n > 0 for s, n in one.moles.items())
+    ]
     if typed is not None and typed not in bringing:
-        draft.fault("recycle.stream", f"write the stream that brings the alkane: {', '.join(bringing) or 'there is none'}")
+        draft.fault(
+            "recycle.stream",
+            f"write the stream that brings the alkane: {', '.join(bringing) or 'there is none'}",
+        )
         return None
     if typed is None and len(bringing) != 1:
         if feed:
-            draft.fault("recycle.stream", f"several streams bring alkane: {', '.join(bringing)}; name one of them")
+            draft.fault(
+                "recycle.stream", f"several streams bring alkane: {', '.join(bringing)}; name one of them"
+            )
         return None
     return typed or bringing[0]

@@ -27,7 +27,7 @@ def _vessel(draft, vessel):
     if "kind" not in vessel:
         return
     if vessel["kind"] == "tanks in series" and "vessel.tanks" not in draft.typed:
-        draft.fault("vessel.tanks", "missing; write how many stand in series, like tanks = 3; sizes are of each tank")
+        draft.fault("vessel.tanks", "missing; write how many, like tanks = 3; sizes are of each tank")
     if vessel["kind"] != "tanks in series" and vessel.get("tanks", 1) != 1:
         draft.fault("vessel.tanks", 'belongs to kind = "tanks in series"')
     if vessel["kind"] in TANKS:

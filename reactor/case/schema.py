@@ -223,7 +223,7 @@ class Limits:
 
 @dataclass(frozen=True, kw_only=True)
 class Targets:
-    """[targets]: what must come out, in SI by the name of the result, and which inputs may be changed for it."""
+    """[targets]: what must come out, in SI by the name of the result, and which inputs may change for it."""
 
     find: tuple[str, ...] = ()
     wanted: dict[str, float] = field(default_factory=dict)
@@ -235,7 +235,9 @@ class RecycleForm:
 
     purge: float = need(kinds.FRACTION.within(0.0, 1.0, '"2 %"'))
     temperature: float = leave(kinds.TEMPERATURE)
-    share: float = assume(kinds.FRACTION.within(0.0, 1.0, '"99 %"'), 0.0, "what is not listed leaves the loop")
+    share: float = assume(
+        kinds.FRACTION.within(0.0, 1.0, '"99 %"'), 0.0, "what is not listed leaves the loop"
+    )
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -327,7 +329,8 @@ class Case:
         content = {part: _plain(getattr(self, part)) for part in parts}
         content["sleeve"] = self.sleeve and asdict(self.sleeve)
         content["feed"] = {name: asdict(feed) for name, feed in self.feed.items()}
-        content |= {part: _plain(getattr(self, part)) for part in ("targets", "recycle") if self._states(part)}
+        for part in filter(self._states, ("targets", "recycle")):
+            content[part] = _plain(getattr(self, part))
         for key, digest in self.files.items():
             *where, last = key.split(".")
             holder = content[where[0]] if len(where) == 1 else content[where[0]][int(where[1]) - 1]
@@ -336,7 +339,9 @@ class Case:
 
     def _states(self, part):
         """Tell whether the case says anything in one of its later sections."""
-        return self.recycle is not None if part == "recycle" else bool(self.targets.wanted or self.targets.find)
+        if part == "recycle":
+            return self.recycle is not None
+        return bool(self.targets.wanted or self.targets.find)
 
     def listing(self):
         """Return rows (key, typed text, SI text, "typed" | "assumed" | "data", why)."""

@@ -94,7 +94,7 @@ def kind_of(name):
 
 def goal(text):
     """
-    Return the `Goal` that a text of the command line spells; raise a ValueError with the sentence for the user.
+    Return the `Goal` that a text of the command line spells; raise a ValueError for the user.
 
     Examples
     --------
@@ -115,7 +115,9 @@ def read(draft, raw):
     find, wanted = raw.get("find", []), {}
     names = [find] if isinstance(find, str) else find
     if not isinstance(names, list) or not all(isinstance(name, str) for name in names):
-        draft.fault("targets.find", 'write one key, like "lamp.power", or several: ["lamp.power", "vessel.length"]')
+        draft.fault(
+            "targets.find", 'write one key, like "lamp.power", or several: ["lamp.power", "vessel.length"]'
+        )
         names = []
     elif names:
         draft.typed["targets.find"] = Typed(", ".join(names), ", ".join(names), "")

@@ -1,4 +1,4 @@
-"""Equal stirred tanks in series: what leaves one is fed to the next; each has its own lamps and its own jacket."""
+"""Equal stirred tanks in series: each is fed with what leaves the last, with its own lamps and jacket."""
 
 from dataclasses import replace
 
@@ -48,8 +48,10 @@ def _cell(case, plant, feed, number):
     chosen, remark = reached(case, tank, states, feed, gas, budget)
     one = profile_of(case, gas, tank, feed, states, chosen, f"tank {number}: {remark}")
     flows = Balance(tank).flows(states[chosen].n, states[chosen].T)
-    totals = {name: np.array([getattr(flows, name) * (1 if name == "time" else case.vessel.parallel)])
-              for name in TOTALS}
+    totals = {
+        name: np.array([getattr(flows, name) * (1 if name == "time" else case.vessel.parallel)])
+        for name in TOTALS
+    }
     return replace(one, totals=totals)
 
 
@@ -63,11 +65,28 @@ def _chain(case, gas, inlet, cells):
     totals = {name: np.cumsum([cell.total(name) for cell in cells]) for name in TOTALS}
     T = np.array([cell.temperature[0] for cell in cells])
     z = case.vessel.length * np.arange(1, len(cells) + 1)
-    column = {name: np.array([getattr(cell, name)[0] for cell in cells]) for name in ("coolant", "pressure", "photolysis")}
+    column = {
+        name: np.array([getattr(cell, name)[0] for cell in cells])
+        for name in ("coolant", "pressure", "photolysis")
+    }
     last = cells[-1].outlet
     hottest = int(T.argmax())
-    return Profile("tanks in series", gas.species, z, np.array([cell.moles[0] for cell in cells]), T, column["coolant"],
-                   column["pressure"], column["photolysis"], totals, (float(T[hottest]), float(z[hottest])),
-                   cells[0].feeds, inlet, Stream("outlet", last.moles, last.temperature, last.pressure),
-                   sum(cell.volume for cell in cells), max((cell.states for cell in cells), key=len),
-                   tuple(remark for cell in cells for remark in cell.remarks), {"rtol": case.solver.rtol})
+    return Profile(
+        "tanks in series",
+        gas.species,
+        z,
+        np.array([cell.moles[0] for cell in cells]),
+        T,
+        column["coolant"],
+        column["pressure"],
+        column["photolysis"],
+        totals,
+        (float(T[hottest]), float(z[hottest])),
+        cells[0].feeds,
+        inlet,
+        Stream("outlet", last.moles, last.temperature, last.pressure),
+        sum(cell.volume for cell in cells),
+        max((cell.states for cell in cells), key=len),
+        tuple(remark for cell in cells for remark in cell.remarks),
+        {"rtol": case.solver.rtol},
+    )

@@ -1,8 +1,9 @@
 """
-Hand estimates beside the full model: the rules of a pocket calculator with the numbers of the case put in.
+Hand estimates beside the full model: the rules of a pocket calculator with the numbers put in.
 
-The constants are remembered ones (data/rating/hand.csv), not those of the model: a ratio far from one means that one of
-the two is wrong, or that the rule does not hold here; the note of each rule says when it does not.
+The constants are remembered ones (data/rating/hand.csv), not those of the model: a ratio far from one means
+that one of the two is wrong, or that the rule does not hold here; the note of each rule says when it does
+not.
 """
 
 import math
@@ -19,7 +20,7 @@ CHLORINE, ACID = 0.0709, 0.03646  # kg/mol
 
 
 class Line(NamedTuple):
-    """One rule: its name, the formula with numbers, hand and model value, unit, ratio model/hand, mark, note."""
+    """One rule: name, formula with numbers, hand and model value, unit, ratio model/hand, mark, note."""
 
     name: str
     formula: str
@@ -55,14 +56,14 @@ class _Desk:
     def __init__(self, case, result):
         self.case, self.result = case, result
         self.number = {name: datum.value for name, datum in library.sheet("rating/hand.csv").items()}
-        self.moles = {}
+        self.moles: dict[str, float] = {}
         for feed in case.feed.values():
             for species, n in feed.moles.items():
                 self.moles[species] = self.moles.get(species, 0.0) + n
         self.total, self.chlorine = sum(self.moles.values()), self.moles["Cl2"]
         feeds = [s for s in self.moles if s in ALKANES and is_alkane(s)]
-        self.alkane = max(feeds, key=self.moles.get, default=None)
-        self.fuel = self.moles.get(self.alkane, 0.0)
+        self.alkane = max(feeds, key=lambda s: self.moles[s], default=None)
+        self.fuel = self.moles.get(self.alkane or "", 0.0)
         self.slip = result["chlorine_slip"]
         self.used = self.chlorine * (1 - self.slip)
         self.x = self.chlorine / self.total
@@ -81,7 +82,7 @@ class _Desk:
 
     @property
     def heat(self):
-        """Return the heat per mol of chlorine: of one step, or of all four where chlorine is plenty [J/mol]."""
+        """Return the heat per mol of chlorine, of one step or of all four where it is plenty [J/mol]."""
         steps = self.chlorine / self.fuel
         if self.alkane != "CH4" or steps <= 1:
             return self.number[f"heat_{self.alkane}"]
@@ -94,8 +95,13 @@ class _Desk:
     @property
     def capacity(self):
         """Return the heat capacity of the mixed feed [J/mol/K]."""
-        return sum(n * self.number.get(f"capacity_{s}", self.number["capacity_other"])
-                   for s, n in self.moles.items()) / self.total
+        return (
+            sum(
+                n * self.number.get(f"capacity_{s}", self.number["capacity_other"])
+                for s, n in self.moles.items()
+            )
+            / self.total
+        )
 
     @property
     def concentration(self):
@@ -125,25 +131,41 @@ def _line(name, formula, value, model, unit, note="", scale=1.0):
     """Return a `Line`, marked when the ratio lies outside 0.5 to 2."""
     ratio = None if model is None or not value else model / value
     marked = ratio is not None and not LOW <= ratio <= HIGH
-    return Line(name, formula, value * scale, None if model is None else model * scale, unit, ratio, marked, note)
+    return Line(
+        name, formula, value * scale, None if model is None else model * scale, unit, ratio, marked, note
+    )
 
 
 def acid(d):
     """HCl by moles: one for every chlorine used."""
     value = d.used * ACID * 3600
-    return _line("HCl", f"{d.used:.4g} mol/s x 36.46 g/mol", value, d.result["hydrogen_chloride_mass"], "kg/h")
+    return _line(
+        "HCl", f"{d.used:.4g} mol/s x 36.46 g/mol", value, d.result["hydrogen_chloride_mass"], "kg/h"
+    )
 
 
 def duty(d):
     """Heat by moles of chlorine used."""
-    return _line("heat of reaction", f"{d.used:.4g} mol/s x {d.heat / 1e3:.4g} kJ/mol", d.used * d.heat,
-                 d.result["heat_reaction"], "kW", scale=1e-3)
+    return _line(
+        "heat of reaction",
+        f"{d.used:.4g} mol/s x {d.heat / 1e3:.4g} kJ/mol",
+        d.used * d.heat,
+        d.result["heat_reaction"],
+        "kW",
+        scale=1e-3,
+    )
 
 
 def rise(d):
     """Adiabatic rise: share of chlorine times heat over heat capacity."""
-    return _line("adiabatic rise", f"{d.x:.3g} x {d.heat / 1e3:.4g} kJ/mol / {d.capacity:.3g} J/mol/K", d.rise,
-                 d.result["adiabatic_rise"], "K", "the feed's heat capacity at 350 K; hot gas takes more")
+    return _line(
+        "adiabatic rise",
+        f"{d.x:.3g} x {d.heat / 1e3:.4g} kJ/mol / {d.capacity:.3g} J/mol/K",
+        d.rise,
+        d.result["adiabatic_rise"],
+        "K",
+        "the feed's heat capacity at 350 K; hot gas takes more",
+    )
 
 
 def share(d):
@@ -164,14 +186,28 @@ def share(d):
         low, high = (y, high) if left(y)[2] > n else (low, y)
     one, many, _ = left(y)
     rule = "y(1-y)/(y+k(1-y))" if tank else "(y^k-y)/(1-k)"
-    return _line("poly share by mol", f"mono = {rule}, y {y:.4f}, k {k:g}", many / (one + many), d.result["poly_share_mol"],
-                 "%", "k at 350 K; hot gas makes less poly from methane", scale=100)
+    return _line(
+        "poly share by mol",
+        f"mono = {rule}, y {y:.4f}, k {k:g}",
+        many / (one + many),
+        d.result["poly_share_mol"],
+        "%",
+        "k at 350 K; hot gas makes less poly from methane",
+        scale=100,
+    )
 
 
 def stay(d):
     """Residence time at the mean temperature."""
-    return _line("residence time", f"{d.volume * 1e3:.3g} L x {d.case.vessel.pressure / 1e5:.3g} bar / ({d.total:.3g} mol/s R "
-                 f"{d.mean:.0f} K)", d.time, d.result["residence_time"], "s", "mean of inlet and adiabatic outlet")
+    return _line(
+        "residence time",
+        f"{d.volume * 1e3:.3g} L x {d.case.vessel.pressure / 1e5:.3g} bar / ({d.total:.3g} mol/s R "
+        f"{d.mean:.0f} K)",
+        d.time,
+        d.result["residence_time"],
+        "s",
+        "mean of inlet and adiabatic outlet",
+    )
 
 
 def depth(d):
@@ -186,9 +222,20 @@ def depth(d):
     into = next((row["photons"]["value"] for row in d.result.ledger if row["name"] == "into gas"), None)
     lit = max((lamp.lit_to or d.case.vessel.length) for lamp in d.case.lamp)
     at = next((i for i, place in enumerate(z) if place > 1e-3 * lit), None)
-    model = photons[at] / z[at] * lit / into if at and into and len({lamp.lit_to for lamp in d.case.lamp}) == 1 else None
-    return _line("absorbed at the inlet", f"1 - exp(-{d.sigma * 1e4:.3g} cm2 x {c * 6.022e17:.3g} cm-3 x {d.gap * 1e3:.3g} mm)",
-                 1 - math.exp(-tau), model, "%", "rays straight across; real ones are slanted", scale=100)
+    model = (
+        photons[at] / z[at] * lit / into
+        if at and into and len({lamp.lit_to for lamp in d.case.lamp}) == 1
+        else None
+    )
+    return _line(
+        "absorbed at the inlet",
+        f"1 - exp(-{d.sigma * 1e4:.3g} cm2 x {c * 6.022e17:.3g} cm-3 x {d.gap * 1e3:.3g} mm)",
+        1 - math.exp(-tau),
+        model,
+        "%",
+        "rays straight across; real ones are slanted",
+        scale=100,
+    )
 
 
 def light(d):
@@ -206,17 +253,35 @@ def light(d):
         rule = "J = 4 kt/(b t)^2 (c^-1/2 - c0^-1/2)^2"
     J = root**2
     photons = J * d.volume / (d.sigma * AVOGADRO * d.gap)
-    into = next((row for row in d.result.ledger if row["name"] == "into gas" and row["photons"]["value"]), None)
+    into = next(
+        (row for row in d.result.ledger if row["name"] == "into gas" and row["photons"]["value"]), None
+    )
     energy = into["power"]["value"] / into["photons"]["value"] if into else 3.28e5
-    return _line("light into the gas", f"{rule} = {J:.3g} 1/s, W = J V E/(sigma N gap)", photons * energy,
-                 d.result["light_into_gas"], "W",
-                 "one radical, one temperature, thin gas: expect a factor 3; chloromethyl radicals ask for more, heat for less")
+    return _line(
+        "light into the gas",
+        f"{rule} = {J:.3g} 1/s, W = J V E/(sigma N gap)",
+        photons * energy,
+        d.result["light_into_gas"],
+        "W",
+        "one radical, one temperature, thin gas: expect a factor 3; chloromethyl radicals ask for more, "
+        "heat for less",
+    )
 
 
 def wall(d):
     """Transfer units of a turbulent annulus."""
-    if d.case.vessel.kind != "plug flow" or d.case.cooling.mode == "none" or d.result["transfer_units"] is None:
+    if (
+        d.case.vessel.kind != "plug flow"
+        or d.case.cooling.mode == "none"
+        or d.result["transfer_units"] is None
+    ):
         return None
     ratio = d.case.vessel.length / d.hydraulic
-    return _line("transfer units", f"{d.number['transfer']:g} x L/Dh {ratio:.3g}", d.number["transfer"] * ratio,
-                 d.result["transfer_units"], "1", "turbulent gas; below 0.3 the tube is close to adiabatic")
+    return _line(
+        "transfer units",
+        f"{d.number['transfer']:g} x L/Dh {ratio:.3g}",
+        d.number["transfer"] * ratio,
+        d.result["transfer_units"],
+        "1",
+        "turbulent gas; below 0.3 the tube is close to adiabatic",
+    )

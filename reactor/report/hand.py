@@ -22,12 +22,10 @@ def render(lines, emphasis=str):
         row = f"{one.name:<24}{figure(one.hand, 3):>12}{figure(one.model, 3):>12}{ratio:>8}{unit}"
         rows.append(emphasis(f"{row}   <- OUTSIDE 0.5 TO 2") if one.marked else row)
         rows.append(paragraph(one.formula + (f" ({one.note})" if one.note else ""), "    "))
-    rows += ["", paragraph("The constants are remembered ones, not those of the model. Ratio = full model over hand.")]
-    return section("BY HAND", rows if lines else ["no rule fits: the feed has no methane, ethane or propane"], emphasis)
-
-
-def box(case, result, emphasis=str):
-    """Return the hand box of a rated case."""
-    from reactor.rating.hand import hand
-
-    return render(hand(case, result), emphasis)
+    rows += [
+        "",
+        paragraph("The constants are remembered ones, not those of the model. Ratio = full model over hand."),
+    ]
+    return section(
+        "BY HAND", rows if lines else ["no rule fits: the feed has no methane, ethane or propane"], emphasis
+    )

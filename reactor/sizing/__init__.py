@@ -1,4 +1,8 @@
-"""Targets in, equipment out: find inputs for wanted results, and say how many tubes, stages and watts that takes."""
+"""
+Targets in, equipment out.
+
+Find inputs for wanted results, and say how many tubes, stages and watts that takes.
+"""
 
 from reactor.sizing.run import PARTS, PLAIN, Options, run
 

@@ -1,4 +1,8 @@
-"""The sizing room's own numbers: rules of the trade and loads behind the reactor, each with source and status."""
+"""
+The sizing room's own numbers.
+
+Rules of the trade and loads behind the reactor, each with source and status.
+"""
 
 from reactor import library
 
@@ -18,5 +22,7 @@ def practice(name):
 def cited(*names):
     """Return the provenance of numbers as records {what, value, source, status}."""
     sheet = library.sheet("sizing/practice.csv")
-    return [{"what": name, "value": sheet[name].value, "source": sheet[name].source, "status": sheet[name].status}
-            for name in names]
+    return [
+        {"what": name, "value": sheet[name].value, "source": sheet[name].source, "status": sheet[name].status}
+        for name in names
+    ]

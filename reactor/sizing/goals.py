@@ -1,4 +1,8 @@
-"""Targets and constraints: read from text or from the case, checked against one another, measured at a probe."""
+"""
+Targets and constraints.
+
+Read from text or from the case, checked against one another, measured at a probe.
+"""
 
 import math
 
@@ -20,7 +24,7 @@ DIFFERENCES = ("adiabatic_rise", "exotherm_margin", "dew_point_margin")
 PLAIN = ("transfer_units", "chain_length", "quantum_yield")
 
 
-class Contradiction(ReactorError):
+class Contradiction(ReactorError):  # noqa: N818
     """Report wishes that cannot hold together, whatever is built."""
 
 
@@ -40,8 +44,11 @@ def read(texts, option):
 def of_case(case):
     """Return the goals of [targets] and the constraints of [limits]."""
     wanted = [Goal(name, "=", value, shown(name, value)) for name, value in case.targets.wanted.items()]
-    return wanted, [Goal(name, "<", getattr(case.limits, key), shown(name, getattr(case.limits, key)))
-                    for key, name in LIMITS.items() if getattr(case.limits, key) is not None]
+    return wanted, [
+        Goal(name, "<", getattr(case.limits, key), shown(name, getattr(case.limits, key)))
+        for key, name in LIMITS.items()
+        if getattr(case.limits, key) is not None
+    ]
 
 
 def shown(name, value):
@@ -56,12 +63,22 @@ def shown(name, value):
 def check(wanted, keeps):
     """Raise a `Contradiction` when two wishes exclude each other."""
     goals = [*wanted, *keeps]
-    goals += [Goal("conversion_chlorine", {"<": ">", ">": "<"}.get(g.relation, "="), 1 - g.value, f"(chlorine_slip {g.text})")
-              for g in goals if g.name == "chlorine_slip"]
+    goals += [
+        Goal(
+            "conversion_chlorine",
+            {"<": ">", ">": "<"}.get(g.relation, "="),
+            1 - g.value,
+            f"(chlorine_slip {g.text})",
+        )
+        for g in goals
+        if g.name == "chlorine_slip"
+    ]
     for i, one in enumerate(goals):
         for two in goals[i + 1 :]:
             if one.name == two.name and _exclude(one, two):
-                raise Contradiction(f"{one} and {two} contradict each other: no equipment gives both; change one of them")
+                raise Contradiction(
+                    f"{one} and {two} contradict each other: no equipment gives both; change one of them"
+                )
 
 
 def _exclude(one, two):

@@ -1,4 +1,8 @@
-"""Turndown, and the slow loss of light: slip against flow and against hours, with the dates to relamp and to clean."""
+"""
+Turndown, and the slow loss of light.
+
+Slip against flow and against hours, with the dates to relamp and to clean.
+"""
 
 import math
 from dataclasses import replace
@@ -18,7 +22,10 @@ POINTS = 13
 
 def at_flow(case, factor):
     """Return the case with every feed multiplied; lamps and coolant stay."""
-    feed = {name: replace(one, moles={s: n * factor for s, n in one.moles.items()}) for name, one in case.feed.items()}
+    feed = {
+        name: replace(one, moles={s: n * factor for s, n in one.moles.items()})
+        for name, one in case.feed.items()
+    }
     return replace(case, feed=feed)
 
 
@@ -30,17 +37,33 @@ def turndown(case, probe, result, options):
             found = loop.probe(at_flow(case, factor), warm)
         except ReactorError:
             continue
-        rows.append({"flow": factor, "slip": found["chlorine_slip"], "poly": found["poly_share_mol"],
-                     "hottest": found["temperature_hottest"], "outlet": found["temperature_outlet"],
-                     "skin": found["sleeve_skin_temperature"], "absorbed": found["light_absorbed"],
-                     "pressure_drop": found["pressure_drop"], "residence_time": found["residence_time"]})
+        rows.append(
+            {
+                "flow": factor,
+                "slip": found["chlorine_slip"],
+                "poly": found["poly_share_mol"],
+                "hottest": found["temperature_hottest"],
+                "outlet": found["temperature_outlet"],
+                "skin": found["sleeve_skin_temperature"],
+                "absorbed": found["light_absorbed"],
+                "pressure_drop": found["pressure_drop"],
+                "residence_time": found["residence_time"],
+            }
+        )
     return {"rows": rows}
 
 
 def ageing(case, probe, result, options):
     """Return slip against hours while lamps fade and sleeves go blind, and when to relamp and to clean."""
     if not case.lamp:
-        return {"rows": [], "relamp": None, "relamp_why": "no lamp", "clean": None, "clean_why": "no lamp", "remarks": []}
+        return {
+            "rows": [],
+            "relamp": None,
+            "relamp_why": "no lamp",
+            "clean": None,
+            "clean_why": "no lamp",
+            "remarks": [],
+        }
     end = min(lamp.end_of_life for lamp in case.lamp)
     arc = any(lamp.kind and "mercury" in lamp.kind for lamp in case.lamp)
     life = options.life or practice("lamp_life_arc" if arc else "lamp_life_led")
@@ -54,31 +77,58 @@ def ageing(case, probe, result, options):
     def sleeve(t):
         return (1 - week) ** (t / WEEK)
 
-    rows = [{"hours": t / HOUR, "lamp": lamp(t), "sleeve": sleeve(t), "light": lamp(t) * sleeve(t),
-             "slip": slip(lamp(t) * sleeve(t))} for t in np.linspace(0, life, POINTS)]
+    rows = [
+        {
+            "hours": t / HOUR,
+            "lamp": lamp(t),
+            "sleeve": sleeve(t),
+            "light": lamp(t) * sleeve(t),
+            "slip": slip(lamp(t) * sleeve(t)),
+        }
+        for t in np.linspace(0, life, POINTS)
+    ]
     dark = _first(lambda t: slip(lamp(t) * sleeve(t)), limit, life)
     worn = _first(lambda t: slip(lamp(t)), limit, life)
     return {
-        "rows": rows, "life": life, "deposit_week": week, "limit": limit,
+        "rows": rows,
+        "life": life,
+        "deposit_week": week,
+        "limit": limit,
         "relamp": (life if worn is None else worn) / HOUR,
-        "relamp_why": f"the slip is above {100 * limit:.3g} % with new lamps already" if worn == 0.0 else "the lamps reach their end of life" if worn is None else
-        f"the slip of clean sleeves passes {100 * limit:.3g} %",
+        "relamp_why": f"the slip is above {100 * limit:.3g} % with new lamps already"
+        if worn == 0.0
+        else "the lamps reach their end of life"
+        if worn is None
+        else f"the slip of clean sleeves passes {100 * limit:.3g} %",
         "clean": None if dark is None else dark / HOUR,
-        "clean_why": f"the slip is above {100 * limit:.3g} % with new lamps already" if dark == 0.0 else "limits.chlorine_slip is not stated" if limit is None else
-        "the slip stays below its limit for the life of the lamps" if dark is None else
-        f"lamps and deposit together pass {100 * limit:.3g} %",
-        "remarks": [f"light falls straight to {100 * end:.0f} % in {life / HOUR:.0f} h, and by {100 * week:.3g} % a week in "
-                    "deposit: figures of the trade or stated by you, not computed"],
+        "clean_why": f"the slip is above {100 * limit:.3g} % with new lamps already"
+        if dark == 0.0
+        else "limits.chlorine_slip is not stated"
+        if limit is None
+        else "the slip stays below its limit for the life of the lamps"
+        if dark is None
+        else f"lamps and deposit together pass {100 * limit:.3g} %",
+        "remarks": [
+            f"light falls straight to {100 * end:.0f} % in {life / HOUR:.0f} h, and by {100 * week:.3g} "
+            f"% a week in "
+            "deposit: figures of the trade or stated by you, not computed"
+        ],
         "rules": cited("lamp_life_led", "lamp_life_arc", "deposit_week"),
     }
 
 
 def slip_of_light(case):
-    """Return the slip as a function of the share of fresh light: rated at `SHARES`, straight in logarithms between."""
+    """
+    Return the slip as a function of the share of fresh light.
+
+    Rated at `SHARES`, straight in logarithms between.
+    """
     known, warm = [], loop.Warm()
     for share in SHARES:
         try:
-            known.append((math.log(share), math.log(loop.probe(of_fresh(case, share), warm)["chlorine_slip"])))
+            known.append(
+                (math.log(share), math.log(loop.probe(of_fresh(case, share), warm)["chlorine_slip"]))
+            )
         except ReactorError:
             continue
     x, y = (np.array(column) for column in zip(*sorted(known), strict=True))

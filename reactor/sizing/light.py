@@ -1,6 +1,7 @@
 """Lamp power against chlorine slip, and lamp watts against gas volume at the same slip."""
 
 import math
+from itertools import pairwise
 
 from reactor import case as cases
 from reactor.errors import ReactorError
@@ -14,7 +15,9 @@ VOLUMES = (0.5, 0.7, 1.4, 2.0, 4.0)  # of the design volume, for the trade
 
 def dimmed(case, factor):
     """Return the case with the mains power of every lamp multiplied."""
-    return cases.changed(case, [f"lamp.{i}.power={lamp.power * factor:.10g} W" for i, lamp in enumerate(case.lamp, 1)])
+    return cases.changed(
+        case, [f"lamp.{i}.power={lamp.power * factor:.10g} W" for i, lamp in enumerate(case.lamp, 1)]
+    )
 
 
 def of_fresh(case, share):
@@ -26,17 +29,22 @@ def lamp_curve(case, probe, result, options):
     """
     Return lamp power against chlorine slip over four decades, with fresh, end-of-life and 70 % lamps marked.
 
-    The mains power of all lamps is changed together; everything else stands. `law` is minus d ln(power)/d ln(slip): 1 where a decade less slip costs a decade more light.
+    The mains power of all lamps is changed together; everything else stands. `law` is minus d ln(power)/d
+    ln(slip): 1 where a decade less slip costs a decade more light.
     """
     if not case.lamp:
         return {"curve": [], "points": [], "remark": "the case has no lamp"}
     design = _row(probe)
     warm = loop.Warm()
-    rows = sorted([*_walk(case, design, 1.0, warm), design, *_walk(case, design, -1.0, warm)],
-                  key=lambda row: row["electrical"])
-    for row, other in zip(rows, rows[1:], strict=False):
+    rows = sorted(
+        [*_walk(case, design, 1.0, warm), design, *_walk(case, design, -1.0, warm)],
+        key=lambda row: row["electrical"],
+    )
+    for row, other in pairwise(rows):
         if other["slip"] < row["slip"]:
-            row["law"] = -math.log(other["electrical"] / row["electrical"]) / math.log(other["slip"] / row["slip"])
+            row["law"] = -math.log(other["electrical"] / row["electrical"]) / math.log(
+                other["slip"] / row["slip"]
+            )
     points = [_point("end of life (design)", case, probe)]
     for name, share in (("fresh lamp", 1.0), ("lamp at 70 % of fresh", 0.7)):
         aged = of_fresh(case, share)
@@ -47,7 +55,9 @@ def lamp_curve(case, probe, result, options):
 def _walk(case, design, direction, warm):
     """Return further rows, half a decade of slip apart, to more (1) or less (-1) light than the design's."""
     rows, factor, law = [design], 1.0, 1.0
-    while len(rows) <= AT_MOST and not (rows[-1]["slip"] < LOWEST if direction > 0 else rows[-1]["slip"] > HIGHEST):
+    while len(rows) <= AT_MOST and not (
+        rows[-1]["slip"] < LOWEST if direction > 0 else rows[-1]["slip"] > HIGHEST
+    ):
         move = direction * HALF * min(max(law, 0.1), 3.0)
         try:
             new = _row(loop.probe(dimmed(case, factor * math.exp(move)), warm))
@@ -63,19 +73,31 @@ def _walk(case, design, direction, warm):
 
 
 def _row(probe):
-    return {"electrical": probe["light_electrical"], "into_gas": probe["light_into_gas"], "slip": probe["chlorine_slip"],
-            "absorbed": probe["light_absorbed"], "law": None}
+    return {
+        "electrical": probe["light_electrical"],
+        "into_gas": probe["light_into_gas"],
+        "slip": probe["chlorine_slip"],
+        "absorbed": probe["light_absorbed"],
+        "law": None,
+    }
 
 
 def _point(name, case, probe):
-    return {"name": name, "light": min(lamp.end_of_life for lamp in case.lamp), "electrical": probe["light_electrical"],
-            "into_gas": probe["light_into_gas"], "slip": probe["chlorine_slip"],
-            "hottest": probe["temperature_hottest"]}
+    return {
+        "name": name,
+        "light": min(lamp.end_of_life for lamp in case.lamp),
+        "electrical": probe["light_electrical"],
+        "into_gas": probe["light_into_gas"],
+        "slip": probe["chlorine_slip"],
+        "hottest": probe["temperature_hottest"],
+    }
 
 
 def needed(case, slip, start=1.0, most=8):
     """
-    Return the factor on the lamp power at which a case has the wanted slip, and its probe; None when there is none.
+    Return the factor on the lamp power at which a case has the wanted slip, and its probe.
+
+    Nan and None when there is none.
 
     Parameters
     ----------
@@ -100,7 +122,7 @@ def needed(case, slip, start=1.0, most=8):
 
     root = search.one(trial, math.log(start), math.log(start) - 12, math.log(start) + 12, most)
     if not root.found and not abs(root.gap) < 0.02:
-        return None, None
+        return math.nan, None
     return math.exp(root.x), probes[root.x]
 
 
@@ -109,25 +131,40 @@ def trade(case, probe, result, options):
     slip, rows = probe["chlorine_slip"], [_litres(probe)]
     for factor in VOLUMES:
         longer = stretched(case, factor)
-        share, found = needed(longer, slip, 1 / factor)
-        if share is not None:
+        found = needed(longer, slip, 1 / factor)[1]
+        if found is not None:
             rows.append(_litres(found))
     rows.sort(key=lambda row: row["volume"])
     return {"slip": slip, "rows": rows}
 
 
 def stretched(case, factor):
-    """Return the case with all its lengths multiplied: vessel, lit lengths and injectors; the lamps keep their power."""
+    """
+    Return the case with all its lengths multiplied: vessel, lit lengths and injectors.
+
+    The lamps keep their power.
+    """
     texts = [f"vessel.length={case.vessel.length * factor:.10g} m"]
     for i, lamp in enumerate(case.lamp, 1):
         stop = case.vessel.length if lamp.lit_to is None else lamp.lit_to
-        texts += [f"lamp.{i}.lit_from={lamp.lit_from * factor:.10g} m", f"lamp.{i}.lit_to={stop * factor:.10g} m"]
-    texts += [f"inject.{i}.position={inject.position * factor:.10g} m" for i, inject in enumerate(case.inject, 1)]
+        texts += [
+            f"lamp.{i}.lit_from={lamp.lit_from * factor:.10g} m",
+            f"lamp.{i}.lit_to={stop * factor:.10g} m",
+        ]
+    texts += [
+        f"inject.{i}.position={inject.position * factor:.10g} m" for i, inject in enumerate(case.inject, 1)
+    ]
     return cases.changed(case, texts)
 
 
 def _litres(probe):
     volume, watts = probe.profile.volume, probe["light_into_gas"]
-    return {"volume": volume, "length": probe.case.vessel.length, "electrical": probe["light_electrical"],
-            "into_gas": watts, "watts_times_litres": watts * volume * 1e3, "slip": probe["chlorine_slip"],
-            "residence_time": probe["residence_time"]}
+    return {
+        "volume": volume,
+        "length": probe.case.vessel.length,
+        "electrical": probe["light_electrical"],
+        "into_gas": watts,
+        "watts_times_litres": watts * volume * 1e3,
+        "slip": probe["chlorine_slip"],
+        "residence_time": probe["residence_time"],
+    }

@@ -1,4 +1,8 @@
-"""What stands behind the reactor: HCl absorber, caustic scrubber (normal and peak), condenser with its dew points."""
+"""
+What stands behind the reactor.
+
+HCl absorber, caustic scrubber (normal and peak), condenser with its dew points.
+"""
 
 import numpy as np
 
@@ -13,22 +17,34 @@ def loads(case, probe, result, options):
     """
     Return the loads of a rated reactor as plain records, flows in kg/h and heat in W.
 
-    The absorber takes all HCl that leaves; the scrubber takes the chlorine slip and what HCl passes the absorber, and
-    at its peak all chlorine that is fed: the lamps are off and the feed still runs.
+    The absorber takes all HCl that leaves; the scrubber takes the chlorine slip and what HCl passes the
+    absorber, and at its peak all chlorine that is fed: the lamps are off and the feed still runs.
     """
     gas, out, fed = probe.gas, probe.profile.outlet, probe.profile.fed
     acid, chlorine = (out.moles[gas.index[s]] for s in ("HCl", "Cl2"))
-    names = ("acid_strength", "acid_heat", "caustic_strength", "caustic_chlorine_heat", "caustic_acid_heat",
-             "absorber_slip", "pump_factor", "condenser_temperature")
+    names = (
+        "acid_strength",
+        "acid_heat",
+        "caustic_strength",
+        "caustic_chlorine_heat",
+        "caustic_acid_heat",
+        "absorber_slip",
+        "pump_factor",
+        "condenser_temperature",
+    )
     return {
         "absorber": absorber(acid * gas.molar_mass[gas.index["HCl"]] * HOUR, acid),
         "scrubber_normal": scrubber(chlorine, practice("absorber_slip") * acid, gas),
         "scrubber_peak": scrubber(float(fed[gas.index["Cl2"]]), 0.0, gas),
         "condenser": condenser(probe),
         "rules": cited(*names),
-        "remarks": ["the gas behind the absorber is wet: chlorine in it attacks steel and needs titanium, glass or plastic",
-                    "the scrubber does not take alkanes or chlorides: its vent is still fuel",
-                    "peak: full chlorine feed with the lamps off, reached at once; how long it lasts is the valve's matter"],
+        "remarks": [
+            "the gas behind the absorber is wet: chlorine in it attacks steel and needs titanium, glass "
+            "or plastic",
+            "the scrubber does not take alkanes or chlorides: its vent is still fuel",
+            "peak: full chlorine feed with the lamps off, reached at once; how long it lasts is the "
+            "valve's matter",
+        ],
     }
 
 
@@ -50,25 +66,41 @@ def absorber(mass, moles):
     163.4 kg/h, 24.5 kW
     """
     strength = practice("acid_strength")
-    return {"hydrogen_chloride": float(mass), "acid": float(mass / strength), "strength": strength,
-            "water": float(mass / strength - mass), "heat": float(-moles * practice("acid_heat"))}
+    return {
+        "hydrogen_chloride": float(mass),
+        "acid": float(mass / strength),
+        "strength": strength,
+        "water": float(mass / strength - mass),
+        "heat": float(-moles * practice("acid_heat")),
+    }
 
 
 def scrubber(chlorine, acid, gas):
-    """Return the soda that chlorine and HCl [mol/s] need, as pure NaOH, as liquor with its excess, and the heat."""
+    """
+    Return the soda that chlorine and HCl [mol/s] need, as pure NaOH, as liquor with its excess.
+
+    And the heat.
+    """
     soda = (2 * chlorine + acid) * SODA * HOUR
     heat = -(chlorine * practice("caustic_chlorine_heat") + acid * practice("caustic_acid_heat"))
-    return {"chlorine": float(chlorine * gas.molar_mass[gas.index["Cl2"]] * HOUR), "soda": float(soda),
-            "liquor": float(soda / practice("caustic_strength")), "strength": practice("caustic_strength"),
-            "pumped": float(practice("pump_factor") * soda / practice("caustic_strength")), "heat": float(heat)}
+    return {
+        "chlorine": float(chlorine * gas.molar_mass[gas.index["Cl2"]] * HOUR),
+        "soda": float(soda),
+        "liquor": float(soda / practice("caustic_strength")),
+        "strength": practice("caustic_strength"),
+        "pumped": float(practice("pump_factor") * soda / practice("caustic_strength")),
+        "heat": float(heat),
+    }
 
 
 def condenser(probe):
     """
-    Return the dew points of the outlet, before and after the HCl is absorbed, and what a condenser takes and finds.
+    Return the dew points of the outlet, before and after the HCl is absorbed.
 
-    Duty: cooling of all gas to the condenser, without the latent heat of the little that condenses from a gas so dilute
-    (said in the record); liquid: flash of the acid-free gas by Raoult's law.
+    And what a condenser takes and finds.
+
+    Duty: cooling of all gas to the condenser, without the latent heat of the little that condenses from a
+    gas so dilute (said in the record); liquid: flash of the acid-free gas by Raoult's law.
     """
     gas, out = probe.gas, probe.profile.outlet
     T = practice("condenser_temperature")
@@ -78,20 +110,36 @@ def condenser(probe):
     liquid = flash(dry, T, out.pressure, gas)
     cooling = float(dry @ (gas.enthalpy(out.temperature) - gas.enthalpy(T)))
     coldest = float(np.min(np.minimum(probe.profile.temperature, probe.profile.coolant)))
-    rows = [_dew("outlet", out.moles, out.pressure, gas), _dew("outlet without HCl and Cl2", dry, out.pressure, gas),
-            _dew("the same at 6 bar absolute", dry, 6e5, gas)]
-    return {"temperature": T, "pressure": out.pressure, "dew_points": rows, "coldest_wall": coldest,
-            "margin": None if rows[0]["temperature"] is None else coldest - rows[0]["temperature"],
-            "sensible_heat": cooling, "latent_heat": float(_latent(liquid, gas, T)),
-            "liquid": {s: float(n * m * HOUR) for s, n, m in zip(gas.species, liquid, gas.molar_mass, strict=True)
-                       if n > 1e-9 * dry.sum()},
-            "liquid_total": float(liquid @ gas.molar_mass * HOUR)}
+    rows = [
+        _dew("outlet", out.moles, out.pressure, gas),
+        _dew("outlet without HCl and Cl2", dry, out.pressure, gas),
+        _dew("the same at 6 bar absolute", dry, 6e5, gas),
+    ]
+    return {
+        "temperature": T,
+        "pressure": out.pressure,
+        "dew_points": rows,
+        "coldest_wall": coldest,
+        "margin": None if rows[0]["temperature"] is None else coldest - rows[0]["temperature"],
+        "sensible_heat": cooling,
+        "latent_heat": float(_latent(liquid, gas, T)),
+        "liquid": {
+            s: float(n * m * HOUR)
+            for s, n, m in zip(gas.species, liquid, gas.molar_mass, strict=True)
+            if n > 1e-9 * dry.sum()
+        },
+        "liquid_total": float(liquid @ gas.molar_mass * HOUR),
+    }
 
 
 def _dew(where, moles, P, gas):
     found = dewpoint.dew_point(dict(zip(gas.species, moles / moles.sum(), strict=True)), P)
-    return {"where": where, "temperature": None if found is None else float(found.temperature),
-            "species": None if found is None else found.species, "phase": None if found is None else found.phase}
+    return {
+        "where": where,
+        "temperature": None if found is None else float(found.temperature),
+        "species": None if found is None else found.species,
+        "phase": None if found is None else found.phase,
+    }
 
 
 def flash(moles, T, P, gas):
@@ -102,7 +150,9 @@ def flash(moles, T, P, gas):
     heavy = np.isfinite(K) & (z > 0)
 
     def balance(vapour):
-        return float((z[heavy] * (K[heavy] - 1) / (1 + vapour * (K[heavy] - 1))).sum() + z[~heavy].sum() / vapour)
+        return float(
+            (z[heavy] * (K[heavy] - 1) / (1 + vapour * (K[heavy] - 1))).sum() + z[~heavy].sum() / vapour
+        )
 
     low, high = 1e-9, 1.0
     if (z[heavy] / K[heavy]).sum() <= 1.0:  # above the dew point: all vapour
@@ -115,7 +165,7 @@ def flash(moles, T, P, gas):
 
 
 def _latent(liquid, gas, T):
-    """Return the latent heat of a liquid from the slope of its vapour pressure (Clausius and Clapeyron) [W]."""
+    """Return the latent heat of a liquid [W], by Clausius and Clapeyron."""
     heat = 0.0
     for species, n in zip(gas.species, liquid, strict=True):
         if n > 0:

@@ -8,15 +8,23 @@ from reactor.models.assemble import mixed_feed
 from reactor.rating import figures, hazard
 from reactor.rating.plant import lamps, plant
 
-JUDGED = ("mtsr", "light_off_temperature", "dew_point_margin", "exotherm_margin", "class_inlet", "class_worst")
+JUDGED = (
+    "mtsr",
+    "light_off_temperature",
+    "dew_point_margin",
+    "exotherm_margin",
+    "class_inlet",
+    "class_worst",
+)
 
 
 class Probe:
     """
     A solved case whose results are read by name: `probe["chlorine_slip"]`, `probe["products.CH3Cl"]`, in SI.
 
-    The numbers are those of `rate`, computed by the same functions from the same profile; bands, verdicts and the
-    order of the chain in light, which cost more than the solution itself, are left out until they are asked for.
+    The numbers are those of `rate`, computed by the same functions from the same profile; bands, verdicts
+    and the order of the chain in light, which cost more than the solution itself, are left out until they
+    are asked for.
     """
 
     def __init__(self, case):
@@ -31,9 +39,13 @@ class Probe:
     def light(self):
         """Return the light account without chain figures, {name: W or mol/s}."""
         accounts = {a.name: a.watts * self.case.vessel.vessels for a in self.plant.light.accounts}
-        return {"light_electrical": accounts.get("mains", 0.0), "light_radiant": accounts.get("radiant", 0.0),
-                "light_into_gas": accounts.get("into gas", 0.0), "light_absorbed": self.profile.total("photon_power"),
-                "photons_absorbed": self.profile.total("photons")}
+        return {
+            "light_electrical": accounts.get("mains", 0.0),
+            "light_radiant": accounts.get("radiant", 0.0),
+            "light_into_gas": accounts.get("into gas", 0.0),
+            "light_absorbed": self.profile.total("photon_power"),
+            "photons_absorbed": self.profile.total("photons"),
+        }
 
     def _groups(self):
         """Yield records of results, the cheap ones first."""
@@ -62,15 +74,18 @@ class Probe:
             record = record.get(part, {"value": 0.0, "unit": "1"})
         if not isinstance(record, dict) or record["value"] is None:
             return record if isinstance(record, str) else None
-        return float(units.to_si(record["value"], record["unit"].replace("1", "-") if record["unit"] == "1"
-                                 else record["unit"]))
+        return float(
+            units.to_si(
+                record["value"], record["unit"].replace("1", "-") if record["unit"] == "1" else record["unit"]
+            )
+        )
 
 
 def many(cases):
     """Return a `Probe` of every case of a curve; None where the case cannot be solved."""
     from reactor.errors import ReactorError
 
-    found = []
+    found: list[Probe | None] = []
     for case in cases:
         try:
             found.append(Probe(case))

@@ -29,7 +29,8 @@ def run(case, find=(), wanted=(), keeps=(), between=None, parts=PLAIN, options=O
     case : Case
         Where the search starts. [-]
     find, wanted, keeps : sequence
-        Unknown inputs, targets and constraints; when no target is given, [targets] and [limits] of the case. [-]
+        Unknown inputs, targets and constraints; when no target is given, [targets] and [limits] of the
+        case. [-]
     between : tuple of str, optional
         Range of a single unknown. [-]
     parts : sequence of str
@@ -39,8 +40,10 @@ def run(case, find=(), wanted=(), keeps=(), between=None, parts=PLAIN, options=O
     """
     if not wanted:
         wanted, limits = goals.of_case(case)
-        find, keeps = find or case.targets.find, [*keeps, *(k for k in limits if k.name not in {w.name for w in wanted})] \
-            if wanted else keeps
+        find, keeps = (
+            find or case.targets.find,
+            [*keeps, *(k for k in limits if k.name not in {w.name for w in wanted})] if wanted else keeps,
+        )
         goals.check(wanted, limits)
     found = size(case, find, wanted, keeps, between)
     closed = found.probe.case
@@ -62,9 +65,15 @@ def _table(part):
     from importlib import import_module
 
     module, name = {
-        "light": ("light", "lamp_curve"), "trade": ("light", "trade"), "tubes": ("tubes", "tubes"),
-        "loads": ("loads", "loads"), "stages": ("stages", "stages"), "kinds": ("side_by_side", "kinds"),
-        "lamps": ("choosers", "lamps"), "gaps": ("choosers", "gaps"), "turndown": ("life", "turndown"),
+        "light": ("light", "lamp_curve"),
+        "trade": ("light", "trade"),
+        "tubes": ("tubes", "tubes"),
+        "loads": ("loads", "loads"),
+        "stages": ("stages", "stages"),
+        "kinds": ("side_by_side", "kinds"),
+        "lamps": ("choosers", "lamps"),
+        "gaps": ("choosers", "gaps"),
+        "turndown": ("life", "turndown"),
         "ageing": ("life", "ageing"),
     }[part]
     return getattr(import_module(f"reactor.sizing.{module}"), name)

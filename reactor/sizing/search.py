@@ -1,8 +1,9 @@
 """
 Find a root with few costly trials: one unknown by bracket, several by a damped secant rule.
 
-Everything runs on plain numbers: `trial(x)` gives the gap between a result and its target, or raises `Blocked`
-where nothing can be solved. Near misses are kept, so that "no solution" comes with the curve that was seen.
+Everything runs on plain numbers: `trial(x)` gives the gap between a result and its target, or raises
+`Blocked` where nothing can be solved. Near misses are kept, so that "no solution" comes with the curve that
+was seen.
 """
 
 import math
@@ -12,10 +13,18 @@ import numpy as np
 
 EXACT = 2e-7  # of the target; a found input gives the target back within this
 NARROW = 1e-9  # relative width of a bracket that cannot be narrowed further
-STEPS = (0.4, 1.2, 2.3, 2.3, 2.3, 2.3, 2.3)  # first move and the longest moves after it, on the scale of the search
+STEPS = (
+    0.4,
+    1.2,
+    2.3,
+    2.3,
+    2.3,
+    2.3,
+    2.3,
+)  # first move and the longest moves after it, on the scale of the search
 
 
-class Blocked(Exception):
+class Blocked(Exception):  # noqa: N818
     """A trial point where the case cannot be built or solved; says why."""
 
 
@@ -76,7 +85,7 @@ def one(trial, start, low, high, most=14):
     if pair is None:
         x, gap = f.best()
         return Root(x, gap, abs(gap) <= EXACT, "" if abs(gap) <= EXACT else limit, f.trials)
-    return _narrow(f, *pair, most)
+    return _narrow(f, pair[0], pair[1], most)
 
 
 def _walk(f, start, low, high, most):
@@ -92,7 +101,9 @@ def _walk(f, start, low, high, most):
                 return None, "the trials allowed are used up; narrow the range with --between"
             new = min(max(x + direction * step, low), high)
             if new == x:
-                limits[direction] = f"the end of the range, {'highest' if direction > 0 else 'lowest'} value allowed"
+                limits[direction] = (
+                    f"the end of the range, {'highest' if direction > 0 else 'lowest'} value allowed"
+                )
                 break
             new, why = _open(f, x, new)
             if new is None:
@@ -149,7 +160,11 @@ def _narrow(f, a, b, most):
             return Root(b, f(b), False, str(error), f.trials)
         a, b = (b, new) if gap * f(b) < 0 else (a, new)
     x, gap = f.best()
-    jump = "the result jumps across the target there" if abs(b - a) <= 1e-6 * (1 + abs(b)) else "the trials allowed are used up"
+    jump = (
+        "the result jumps across the target there"
+        if abs(b - a) <= 1e-6 * (1 + abs(b))
+        else "the trials allowed are used up"
+    )
     return Root(x, gap, abs(gap) <= EXACT, jump, f.trials)
 
 
@@ -160,8 +175,10 @@ def _guess(f, a, b, last):
     near = sorted(f.seen, key=lambda place: abs(f.seen[place]))[:3]
     values = [f.seen[place] for place in near]
     if len(near) == 3 and len({round(v, 15) for v in values}) == 3:
-        quadratic = sum(p * math.prod(-values[j] / (values[i] - values[j]) for j in range(3) if j != i)
-                        for i, p in enumerate(near))
+        quadratic = sum(
+            p * math.prod(-values[j] / (values[i] - values[j]) for j in range(3) if j != i)
+            for i, p in enumerate(near)
+        )
         if min(a, b) < quadratic < max(a, b):
             x = quadratic
     inner = 1e-3 if abs(fb) > 1e-3 else 0.0  # keep off the ends while far from done
@@ -175,7 +192,8 @@ def _guess(f, a, b, last):
 
 def several(trial, start, low, high, most=30):
     """
-    Return the `Root` of as many gaps as unknowns: Newton's rule on differences, then Broyden's update, damped.
+    Return the `Root` of as many gaps as unknowns: Newton's rule on differences, then Broyden's update,
+    damped.
 
     Parameters
     ----------
@@ -212,11 +230,15 @@ def several(trial, start, low, high, most=30):
             slope = slope + np.outer(new_gap - gap - slope @ change, change) / max(change @ change, 1e-300)
             x, gap, fresh = new, new_gap, False
     except Blocked as error:
-        best = min(trials, key=lambda item: np.abs(item[1]).max(), default=(tuple(start), np.array([math.nan])))
+        best = min(
+            trials, key=lambda item: np.abs(item[1]).max(), default=(tuple(start), np.array([math.nan]))
+        )
         return Root(best[0], best[1], False, str(error), trials)
     best, gap = min(trials, key=lambda item: np.abs(item[1]).max())
     at = [i for i in range(len(best)) if best[i] <= low[i] + 1e-9 or best[i] >= high[i] - 1e-9]
-    limit = f"the end of the range of unknown {at[0] + 1}" if at else "the targets pull against one another there"
+    limit = (
+        f"the end of the range of unknown {at[0] + 1}" if at else "the targets pull against one another there"
+    )
     return Root(best, gap, False, limit, trials)
 
 

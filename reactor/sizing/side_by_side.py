@@ -23,6 +23,7 @@ def remade(case, edit):
 
 def as_tanks(case, number):
     """Return a case as `number` equal stirred tanks in series, volume and lamps shared out evenly."""
+
     def edit(tree):
         vessel = tree["vessel"]
         vessel.pop("geometry", None)
@@ -43,15 +44,20 @@ def as_tube(case):
     """Return a case of tanks as plug flow: one annulus round every sleeve, as long as the tanks together."""
     if case.vessel.kind not in TANKS:
         return case
-    inside, outside = radii(case)
+    outside = radii(case)[1]
     count, length = sleeves(case), case.vessel.tanks * case.vessel.length
 
     def edit(tree):
         vessel = tree["vessel"]
         for key in ("stirring", "impeller", "start", "tanks"):
             vessel.pop(key, None)
-        vessel |= {"kind": "plug flow", "geometry": "annulus", "shell_inside": f"{2 * outside:.12g} m",
-                   "length": f"{length:.12g} m", "parallel": case.vessel.parallel * count}
+        vessel |= {
+            "kind": "plug flow",
+            "geometry": "annulus",
+            "shell_inside": f"{2 * outside:.12g} m",
+            "length": f"{length:.12g} m",
+            "parallel": case.vessel.parallel * count,
+        }
         tree["sleeve"].pop("number", None)
         for entry, lamp in zip(tree.get("lamp", []), case.lamp, strict=True):
             entry["number"] = 1
@@ -68,25 +74,43 @@ def _lamps(tree, case, share, length):
 
 
 def kinds(case, probe, result, options):
-    """Return for every kind of vessel its slip and poly share, and the lamp power that gives the tube's slip."""
+    """Return for every kind of vessel its slip and poly share, and the lamp power for the same slip."""
     slip = probe["chlorine_slip"]
-    made = [(f"{n} stirred tank{'s' if n > 1 else ''}", as_tanks, n) for n in NUMBERS] + [("plug flow", as_tube, None)]
-    rows = []
-    for name, make, number in made:
-        other = make(case, number) if number else make(case)
+    rows: list[dict] = []
+    for number in (*NUMBERS, None):
+        name = "plug flow" if number is None else f"{number} stirred tank{'s' if number > 1 else ''}"
+        other = as_tube(case) if number is None else as_tanks(case, number)
         try:
             found = loop.probe(other)
         except ReactorError as error:
-            rows.append({"kind": name, "slip": None, "poly": None, "hottest": None, "electrical": None,
-                         "electrical_same_slip": None, "searched": False, "why": str(error)})
+            rows.append(
+                {
+                    "kind": name,
+                    "slip": None,
+                    "poly": None,
+                    "hottest": None,
+                    "electrical": None,
+                    "electrical_same_slip": None,
+                    "searched": False,
+                    "why": str(error),
+                }
+            )
             continue
-        share, there = needed(other, slip) if case.lamp and number in SEARCHED else (None, None)
-        rows.append({"kind": name, "slip": found["chlorine_slip"], "poly": found["poly_share_mol"],
-                     "hottest": found["temperature_hottest"], "electrical": found["light_electrical"],
-                     "electrical_same_slip": None if share is None else there["light_electrical"],
-                     "searched": bool(case.lamp) and number in SEARCHED,
-                     "poly_same_slip": None if share is None else there["poly_share_mol"],
-                     "worst_chlorine": float(found.profile.concentrations[:, found.gas.index["Cl2"]].max()), "why": ""})
+        there = needed(other, slip)[1] if case.lamp and number in SEARCHED else None
+        rows.append(
+            {
+                "kind": name,
+                "slip": found["chlorine_slip"],
+                "poly": found["poly_share_mol"],
+                "hottest": found["temperature_hottest"],
+                "electrical": found["light_electrical"],
+                "electrical_same_slip": None if there is None else there["light_electrical"],
+                "searched": bool(case.lamp) and number in SEARCHED,
+                "poly_same_slip": None if there is None else there["poly_share_mol"],
+                "worst_chlorine": float(found.profile.concentrations[:, found.gas.index["Cl2"]].max()),
+                "why": "",
+            }
+        )
     return {"slip": slip, "volume": probe.profile.volume, "rows": rows, "remarks": words(rows, slip)}
 
 
@@ -95,15 +119,24 @@ def words(rows, slip):
     tank, tube = rows[0], rows[-1]
     said = []
     if tank["poly"] and tube["poly"]:
-        said.append(f"one stirred tank makes {tank['poly'] / tube['poly']:.2g} times the poly share of plug flow: all gas sees "
-                    "the products")
+        said.append(
+            f"one stirred tank makes {tank['poly'] / tube['poly']:.2g} times the poly share of plug "
+            f"flow: all gas sees "
+            "the products"
+        )
     if tube["electrical_same_slip"]:
         if tank["electrical_same_slip"]:
             times = tank["electrical_same_slip"] / tube["electrical_same_slip"]
-            said.append(f"for a slip of {100 * slip:.3g} % it asks for {times:.3g} times the lamp power: all gas is at the "
-                        "chlorine of the outlet, where light works worst")
+            said.append(
+                f"for a slip of {100 * slip:.3g} % it asks for {times:.3g} times the lamp power: all "
+                f"gas is at the "
+                "chlorine of the outlet, where light works worst"
+            )
         else:
             said.append(f"a slip of {100 * slip:.3g} % is out of its reach with any lamp")
-    said.append("what the tank gives: one temperature, no hot spot, and feed diluted at once by back-mixing, far from the "
-                "explosive range inside the vessel; the feed pipe and its injector keep theirs")
+    said.append(
+        "what the tank gives: one temperature, no hot spot, and feed diluted at once by back-mixing, "
+        "far from the "
+        "explosive range inside the vessel; the feed pipe and its injector keep theirs"
+    )
     return said

@@ -45,8 +45,12 @@ def size(case, find, wanted, keeps=(), between=None):
     unknowns = [unknown(case, key, between if len(find) == 1 else None) for key in find]
     look = Looker(case, unknowns, wanted, keeps)
     if len(unknowns) > 1:
-        root = search.several(look.gaps, [_to(u, u.start) for u in unknowns], [_to(u, u.low) for u in unknowns],
-                              [_to(u, u.high) for u in unknowns])
+        root = search.several(
+            look.gaps,
+            [_to(u, u.start) for u in unknowns],
+            [_to(u, u.low) for u in unknowns],
+            [_to(u, u.high) for u in unknowns],
+        )
     elif unknowns[0].whole:
         root = _whole(look, unknowns[0])
     else:
@@ -58,15 +62,24 @@ def size(case, find, wanted, keeps=(), between=None):
 def _count(find, wanted):
     """Check that there are as many unknowns as targets, all of them equalities."""
     if not find:
-        raise CaseError('nothing to find: name an input, like --find lamp.power, or write find = "lamp.power" in [targets]')
+        raise CaseError(
+            'nothing to find: name an input, like --find lamp.power, or write find = "lamp.power" in '
+            "[targets]"
+        )
     if not wanted:
-        raise CaseError('no target: add one, like --for "chlorine_slip=1 %", or write chlorine_slip = "1 %" in [targets]')
+        raise CaseError(
+            'no target: add one, like --for "chlorine_slip=1 %", or write chlorine_slip = "1 %" in [targets]'
+        )
     for goal in wanted:
         if goal.relation != "=":
-            raise CaseError(f'--for "{goal}": a target is met exactly, write =; a bound belongs to --keep "{goal}"')
+            raise CaseError(
+                f'--for "{goal}": a target is met exactly, write =; a bound belongs to --keep "{goal}"'
+            )
     if len(find) != len(wanted):
-        raise CaseError(f"{len(find)} unknown ({', '.join(find)}) for {len(wanted)} target "
-                        f"({', '.join(map(str, wanted))}): as many of one as of the other are due")
+        raise CaseError(
+            f"{len(find)} unknown ({', '.join(find)}) for {len(wanted)} target "
+            f"({', '.join(map(str, wanted))}): as many of one as of the other are due"
+        )
 
 
 class Looker:
@@ -81,7 +94,9 @@ class Looker:
         """Return the probe at a place on the scale of the search."""
         if x not in self.probes:
             try:
-                changed = put(self.case, self.unknowns, [_from(u, v) for u, v in zip(self.unknowns, x, strict=True)])
+                changed = put(
+                    self.case, self.unknowns, [_from(u, v) for u, v in zip(self.unknowns, x, strict=True)]
+                )
                 self.probes[x] = loop.probe(changed, self.warm)
             except ReactorError as error:
                 raise search.Blocked(str(error).splitlines()[0].removeprefix("--set: ")) from None
@@ -122,6 +137,7 @@ def _scale(u):
 
 def _whole(look, u):
     """Return the first whole number beyond which the target is passed: doubling, then halving."""
+
     def f(n):
         return look.gaps((math.log(n),))[0]
 
@@ -184,11 +200,15 @@ def _answer(case, look, root):
 
 def _nearest_kept(look, x, broken):
     """Return the place nearest to the target that breaks nothing, and the words for what limits it."""
-    words = "; ".join(f"{keep}: it is {goals.shown(keep.name, look.probe(x)[keep.name])} where the target is met"
-                      for keep in broken)
+    words = "; ".join(
+        f"{keep}: it is {goals.shown(keep.name, look.probe(x)[keep.name])} where the target is met"
+        for keep in broken
+    )
     kept = [place for place in look.probes if not look.broken(place)]
     for u in look.unknowns[:1] if not kept and len(look.unknowns) == 1 and not look.unknowns[0].whole else ():
-        kept = [end for end in ((_to(u, u.low),), (_to(u, u.high),)) if _tried(look, end) and not look.broken(end)]
+        kept = [
+            end for end in ((_to(u, u.low),), (_to(u, u.high),)) if _tried(look, end) and not look.broken(end)
+        ]
     if not kept:
         return x, f"{words}; no case that was tried keeps it"
     best = min(kept, key=lambda place: max(map(abs, look.gaps(place))))
@@ -217,16 +237,25 @@ def _tried(look, place):
 
 def _record(look, x, found, limit, met_at):
     """Return the search as plain records."""
+
     def at(place):
         return {u.key: u.text(_from(u, v)) for u, v in zip(look.unknowns, place, strict=True)}
 
     def goal(g, place):
         value = look.probe(place)[g.name]
-        return {"name": g.name, "relation": g.relation, "wanted": g.text, "got": goals.shown(g.name, value),
-                "value": value, "holds": bool(found) if g.relation == "=" else bool(g.holds(value))}
+        return {
+            "name": g.name,
+            "relation": g.relation,
+            "wanted": g.text,
+            "got": goals.shown(g.name, value),
+            "value": value,
+            "holds": bool(found) if g.relation == "=" else bool(g.holds(value)),
+        }
 
-    curve = [{"inputs": at(place)} | {g.name: look.probe(place)[g.name] for g in (*look.wanted, *look.keeps)}
-             for place in sorted(look.probes)]
+    curve = [
+        {"inputs": at(place)} | {g.name: look.probe(place)[g.name] for g in (*look.wanted, *look.keeps)}
+        for place in sorted(look.probes)
+    ]
     return {
         "solved": bool(found),
         "inputs": at(x),

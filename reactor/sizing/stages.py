@@ -1,9 +1,10 @@
 """
-Chlorine in stages: a train of tubes with cooling between them, or injections along one tube, under a cap on chlorine.
+Chlorine in stages: a train of tubes with cooling between them, or injections along one tube, under a cap on
+chlorine.
 
-Every stage is the vessel of the case, rated on what the stage before it left, molecules and radicals, plus its share of
-the chlorine. The chain keeps the number of moles, so n stages at a mole fraction x after each injection bring the total
-from N to N/(1 - x)^n: that is the count.
+Every stage is the vessel of the case, rated on what the stage before it left, molecules and radicals, plus
+its share of the chlorine. The chain keeps the number of moles, so n stages at a mole fraction x after each
+injection bring the total from N to N/(1 - x)^n: that is the count.
 """
 
 import math
@@ -47,8 +48,15 @@ def stages(case, probe, result, options):
     """Return the stage table of the train, its product split beside that of all chlorine at once, and the price."""
     split = split_feed(case)
     if split is None or case.vessel.kind != "plug flow":
-        return {"count": 0, "cap": options.cap, "diluent": 0.0, "chlorine": 0.0, "stages": [], "split": {},
-                "remarks": ["stages need plug flow and one stream of chlorine without alkane"]}
+        return {
+            "count": 0,
+            "cap": options.cap,
+            "diluent": 0.0,
+            "chlorine": 0.0,
+            "stages": [],
+            "split": {},
+            "remarks": ["stages need plug flow and one stream of chlorine without alkane"],
+        }
     gas_feed, chlorine = split
     before, total = sum(gas_feed.moles.values()), sum(chlorine.moles.values())
     alkane = sum(n for s, n in gas_feed.moles.items() if _is(is_alkane, s))
@@ -57,8 +65,15 @@ def stages(case, probe, result, options):
         raise ReactorError(f"--cap: {number} stages; raise the cap or add diluent")
     between = options.between_stages or gas_feed.temperature
     rows, last = train(case, gas_feed, chlorine, number, share, between)
-    found = {"count": number, "cap": options.cap, "share": share, "diluent": (before - alkane) / alkane,
-             "chlorine": total / alkane, "between": between, "stages": rows}
+    found = {
+        "count": number,
+        "cap": options.cap,
+        "share": share,
+        "diluent": (before - alkane) / alkane,
+        "chlorine": total / alkane,
+        "between": between,
+        "stages": rows,
+    }
     found["split"] = {"in stages": product(last, fed(probe)), "all at the inlet": product(probe, fed(probe))}
     found["poly"] = {"in stages": poly(last, fed(probe)), "all at the inlet": probe["poly_share_mol"]}
     found["remarks"] = remarks(found, rows, options)
@@ -71,7 +86,7 @@ def split_feed(case):
     if len(bring) != 1:
         return None
     others = [feed for name, feed in case.feed.items() if name != bring[0]]
-    moles = {}
+    moles: dict[str, float] = {}
     for feed in others:
         for species, n in feed.moles.items():
             moles[species] = moles.get(species, 0.0) + n
@@ -89,14 +104,21 @@ def train(case, gas_feed, chlorine, number, share, between):
     for stage in range(1, number + 1):
         added = flow * (growth - 1)
         flow *= growth
-        injected = Feed(name="chlorine", moles={s: added * x for s, x in fraction.items()}, temperature=chlorine.temperature)
+        injected = Feed(
+            name="chlorine",
+            moles={s: added * x for s, x in fraction.items()},
+            temperature=chlorine.temperature,
+        )
         inlet = replace(gas_feed, temperature=between)
         cooling = 0.0
         if found is not None:
             out, gas = found.profile.outlet, found.gas
             cooling = float(out.moles @ (gas.enthalpy(out.temperature) - gas.enthalpy(between)))
-            inlet = Feed(name="gas", temperature=between,
-                         moles={s: float(n) for s, n in zip(gas.species, out.moles, strict=True) if n > 0})
+            inlet = Feed(
+                name="gas",
+                temperature=between,
+                moles={s: float(n) for s, n in zip(gas.species, out.moles, strict=True) if n > 0},
+            )
         found = Probe(replace(case, feed={"gas": inlet, "chlorine": injected}, inject=(), recycle=None))
         rows.append(_row(stage, found, injected, cooling))
     return rows, found
@@ -108,13 +130,21 @@ def _row(stage, found, injected, cooling):
     inlet = next(m for m in mixed if m["where"] == "inlet, mixed")
     chlorine = gas.index["Cl2"]
     return {
-        "stage": stage, "chlorine": float(injected.moles["Cl2"] * gas.molar_mass[chlorine] * 3600),
-        "chlorine_share": float(profile.inlet.moles[chlorine] / profile.inlet.total), "inlet": profile.inlet.temperature,
-        "hottest": float(profile.hottest[0]), "outlet": float(profile.outlet.temperature),
-        "slip": float(profile.outlet.moles[chlorine] / profile.fed[chlorine]), "cooling": cooling,
-        "class": inlet["class"], "class_worst_corner": inlet["class_worst_corner"], "margin": inlet["margin"]["value"],
-        "adiabatic_rise": found["adiabatic_rise"], "heat_reaction": found["heat_reaction"],
-        "dew_margin": found["dew_point_margin"], "light_electrical": found["light_electrical"],
+        "stage": stage,
+        "chlorine": float(injected.moles["Cl2"] * gas.molar_mass[chlorine] * 3600),
+        "chlorine_share": float(profile.inlet.moles[chlorine] / profile.inlet.total),
+        "inlet": profile.inlet.temperature,
+        "hottest": float(profile.hottest[0]),
+        "outlet": float(profile.outlet.temperature),
+        "slip": float(profile.outlet.moles[chlorine] / profile.fed[chlorine]),
+        "cooling": cooling,
+        "class": inlet["class"],
+        "class_worst_corner": inlet["class_worst_corner"],
+        "margin": inlet["margin"]["value"],
+        "adiabatic_rise": found["adiabatic_rise"],
+        "heat_reaction": found["heat_reaction"],
+        "dew_margin": found["dew_point_margin"],
+        "light_electrical": found["light_electrical"],
     }
 
 
@@ -134,7 +164,11 @@ def product(probe, given):
     """Return the organics formed over the whole train, net of what is fed, {species: kg/h}, largest first."""
     gas = probe.gas
     made = (probe.profile.outlet.moles - given) * gas.molar_mass * 3600
-    found = {s: float(m) for s, m in zip(gas.species, made, strict=True) if m > 1e-3 and _is(is_organic, s) or s == "CCl4"}
+    found = {
+        s: float(m)
+        for s, m in zip(gas.species, made, strict=True)
+        if (m > 1e-3 and _is(is_organic, s)) or s == "CCl4"
+    }
     return dict(sorted(found.items(), key=lambda item: -item[1]))
 
 
@@ -153,13 +187,19 @@ def remarks(found, rows, options):
     said = []
     if once and len(rows) > 1:
         word = "more" if staged > once else "less"
-        said.append(f"poly share {100 * staged:.3g} % by mol in stages, {100 * once:.3g} % with all chlorine at the inlet: "
-                    f"{word} of it in cold stages"
-                    + ("; k(CH3Cl)/k(CH4) falls as the gas gets hot. " if word == "more" else ". ")
-                    + "Staging buys distance from the explosive range and temperature, not selectivity")
+        said.append(
+            f"poly share {100 * staged:.3g} % by mol in stages, {100 * once:.3g} % with all chlorine at "
+            f"the inlet: "
+            f"{word} of it in cold stages"
+            + ("; k(CH3Cl)/k(CH4) falls as the gas gets hot. " if word == "more" else ". ")
+            + "Staging buys distance from the explosive range and temperature, not selectivity"
+        )
     over = [row["stage"] for row in rows if row["chlorine_share"] > options.cap * 1.0001]
     if over:
-        said.append(f"chlorine left over from the stage before lifts stage {', '.join(map(str, over[:6]))} above the cap")
+        said.append(
+            f"chlorine left over from the stage before lifts stage {', '.join(map(str, over[:6]))} "
+            f"above the cap"
+        )
     wet = [row["stage"] for row in rows if row["dew_margin"] is not None and row["dew_margin"] < 10]
     if wet:
         said.append(f"stage {', '.join(map(str, wet[:6]))}: coldest wall less than 10 K above the dew point")

@@ -1,8 +1,8 @@
 """
 How many tubes and why: the counts that heat, velocity or pressure drop, light and glass each ask for.
 
-Each count is found from the equipment alone, at the finished design's flows and duty, without solving the tube again;
-the binding one is the largest. Bores and series passes stand beside it.
+Each count is found from the equipment alone, at the finished design's flows and duty, without solving the
+tube again; the binding one is the largest. Bores and series passes stand beside it.
 """
 
 import math
@@ -23,14 +23,26 @@ def tubes(case, probe, result, options):
     """Return the counts with the binding one named, and the tables of bores and of passes in series."""
     if case.vessel.kind != "plug flow":
         return {"counts": [], "binding": None, "remark": "counts of tubes belong to plug flow"}
-    counts = [by_volume(case, probe), by_heat(case, probe), by_flow(case, probe), by_light(case, probe),
-              by_glass(case, probe)]
+    counts = [
+        by_volume(case, probe),
+        by_heat(case, probe),
+        by_flow(case, probe),
+        by_light(case, probe),
+        by_glass(case, probe),
+    ]
     known = [c for c in counts if c["count"] is not None]
     endless = [c for c in counts if c["count"] is None and c["asked"]]
     binding = (endless or sorted(known, key=lambda c: -c["count"]))[0]
-    return {"counts": counts, "binding": binding["by"], "binding_count": binding["count"],
-            "has": case.vessel.parallel, "pipe": named_pipe(case.vessel.shell_inside), "bores": bores(case, probe),
-            "series": series(case, probe), "rules": cited("gas_velocity", "glass_stress", "glass_buckling_factor")}
+    return {
+        "counts": counts,
+        "binding": binding["by"],
+        "binding_count": binding["count"],
+        "has": case.vessel.parallel,
+        "pipe": named_pipe(case.vessel.shell_inside),
+        "bores": bores(case, probe),
+        "series": series(case, probe),
+        "rules": cited("gas_velocity", "glass_stress", "glass_buckling_factor"),
+    }
 
 
 def _count(by, count, why, asked=True):
@@ -39,8 +51,11 @@ def _count(by, count, why, asked=True):
 
 def by_volume(case, probe):
     """Return the count that the case has: its gas volume holds the wanted slip."""
-    return _count("residence time", case.vessel.parallel,
-                  f"{probe.profile.volume * 1e3:.3g} L of gas hold the slip of {100 * probe['chlorine_slip']:.3g} %")
+    return _count(
+        "residence time",
+        case.vessel.parallel,
+        f"{probe.profile.volume * 1e3:.3g} L of gas hold the slip of {100 * probe['chlorine_slip']:.3g} %",
+    )
 
 
 def exchange(case, probe, parallel=None, **sizes):
@@ -54,7 +69,11 @@ def heat_to_remove(case, probe):
     """Return the heat [W] that walls must take to hold limits.hottest at the outlet, and the mean driving difference [K]."""
     limit, gas, feed = case.limits.hottest, probe.gas, probe.feed
     capacity = float(feed.moles @ gas.heat_capacity((feed.temperature + limit) / 2))
-    released = probe.profile.total("heat_reaction") + probe.profile.total("photon_power") + probe.profile.total("lamp_heat")
+    released = (
+        probe.profile.total("heat_reaction")
+        + probe.profile.total("photon_power")
+        + probe.profile.total("lamp_heat")
+    )
     return released - capacity * (limit - feed.temperature), limit - (case.cooling.inlet or feed.temperature)
 
 
@@ -64,7 +83,9 @@ def by_heat(case, probe):
         return _count("heat", None, "limits.hottest is not stated", asked=False)
     surplus, drive = heat_to_remove(case, probe)
     if surplus <= 0:
-        return _count("heat", 1, f"none: the gas itself takes the heat below {case.limits.hottest - 273.15:.0f} degC")
+        return _count(
+            "heat", 1, f"none: the gas itself takes the heat below {case.limits.hottest - 273.15:.0f} degC"
+        )
     if case.cooling.mode == "none" or drive <= 0:
         return _count("heat", None, f"{surplus / 1e3:.3g} kW would have to go and there is no cooling")
     need, last = surplus / drive, 0.0
@@ -74,10 +95,19 @@ def by_heat(case, probe):
         except ReactorError:
             continue
         if last >= need:
-            return _count("heat", n, f"UA {need:.3g} W/K for {surplus / 1e3:.3g} kW at {drive:.0f} K; U {wall.overall:.1f} "
-                          f"W/m2/K at Re {wall.reynolds:.0f}: more tubes hardly add UA, series passes and small bore do")
-    return _count("heat", None, f"UA {need:.3g} W/K is not reached with {MOST} tubes of this bore ({last:.3g} W/K): more "
-                  "alkane, smaller bore, passes in series or chlorine in stages")
+            return _count(
+                "heat",
+                n,
+                f"UA {need:.3g} W/K for {surplus / 1e3:.3g} kW at {drive:.0f} K; U {wall.overall:.1f} "
+                f"W/m2/K at Re {wall.reynolds:.0f}: more tubes hardly add UA, series passes and small "
+                f"bore do",
+            )
+    return _count(
+        "heat",
+        None,
+        f"UA {need:.3g} W/K is not reached with {MOST} tubes of this bore ({last:.3g} W/K): more "
+        "alkane, smaller bore, passes in series or chlorine in stages",
+    )
 
 
 def _numbers():
@@ -92,12 +122,17 @@ def by_flow(case, probe):
     """Return the count that keeps velocity below the rule and friction below limits.pressure_drop."""
     v = velocity(case, probe)
     cap, drop = practice("gas_velocity"), case.limits.pressure_drop
-    count, why = max(1, math.ceil(case.vessel.parallel * v / cap - 1e-9)), f"{v:.3g} m/s now, {cap:.0f} m/s at most"
+    count, why = (
+        max(1, math.ceil(case.vessel.parallel * v / cap - 1e-9)),
+        f"{v:.3g} m/s now, {cap:.0f} m/s at most",
+    )
     if drop is not None:
         now = probe["pressure_drop"]
         by_drop = max(1, math.ceil(case.vessel.parallel * (now / drop) ** (1 / 1.8) - 1e-9))
         if by_drop > count:
-            return _count("pressure drop", by_drop, f"{now / 100:.3g} mbar now, {drop / 100:.3g} mbar at most")
+            return _count(
+                "pressure drop", by_drop, f"{now / 100:.3g} mbar now, {drop / 100:.3g} mbar at most"
+            )
         why += f"; {now / 100:.3g} mbar of {drop / 100:.3g} mbar"
     return _count("velocity", count, why)
 
@@ -115,27 +150,40 @@ def by_light(case, probe):
         return _count("light", None, "no lamp", asked=False)
     limit = skin_limit(case, probe)
     total = probe["light_electrical"]
-    hottest = float(probe.profile.temperature[probe.profile.photolysis > 0].max(initial=probe.feed.temperature))
+    hottest = float(
+        probe.profile.temperature[probe.profile.photolysis > 0].max(initial=probe.feed.temperature)
+    )
 
     def skin(n):
         share = case.vessel.parallel / n
-        dim = replace(case, lamp=tuple(replace(lamp, power=lamp.power * share) for lamp in case.lamp),
-                      vessel=replace(case.vessel, parallel=n))
+        dim = replace(
+            case,
+            lamp=tuple(replace(lamp, power=lamp.power * share) for lamp in case.lamp),
+            vessel=replace(case.vessel, parallel=n),
+        )
         wall, _ = heat_exchange(dim, probe.gas, lamps(dim), probe.feed)
         return float(wall.skin(hottest)[0])
 
     if hottest >= limit:
-        return _count("light", None, f"the gas itself ({hottest - 273.15:.0f} degC) is above the skin limit of "
-                      f"{limit - 273.15:.0f} degC")
+        return _count(
+            "light",
+            None,
+            f"the gas itself ({hottest - 273.15:.0f} degC) is above the skin limit of "
+            f"{limit - 273.15:.0f} degC",
+        )
     for n in _numbers():
         try:
             T = skin(n)
         except ReactorError:
             continue
-        if T <= limit:
+        if limit >= T:
             metres = n * sum(lamp.lit_to - lamp.lit_from for lamp in case.lamp) / max(len(case.lamp), 1)
-            return _count("light", n, f"{total / 1e3:.3g} kW of lamps, {total / metres / 100:.3g} W per cm of sleeve: skin "
-                          f"{T - 273.15:.0f} degC, limit {limit - 273.15:.0f} degC")
+            return _count(
+                "light",
+                n,
+                f"{total / 1e3:.3g} kW of lamps, {total / metres / 100:.3g} W per cm of sleeve: skin "
+                f"{T - 273.15:.0f} degC, limit {limit - 273.15:.0f} degC",
+            )
         if n > 1000:
             break
     return _count("light", None, f"the skin stays above {limit - 273.15:.0f} degC with 1000 tubes")
@@ -146,8 +194,11 @@ def skin_limit(case, probe):
     if case.limits.sleeve_skin is not None:
         return case.limits.sleeve_skin
     fed = probe.profile.fed
-    fuels = [s for s, n in zip(probe.gas.species, fed, strict=True)
-             if n > 1e-3 * fed.sum() and s in ("CH4", "C2H6", "C3H8", "CH3Cl", "CH2Cl2", "C2H5Cl")]
+    fuels = [
+        s
+        for s, n in zip(probe.gas.species, fed, strict=True)
+        if n > 1e-3 * fed.sum() and s in ("CH4", "C2H6", "C3H8", "CH3Cl", "CH2Cl2", "C2H5Cl")
+    ]
     return materials.hot_surface_limit(fuels)
 
 
@@ -157,17 +208,28 @@ def by_glass(case, probe):
     sleeve = case.sleeve
     allowed = sleeve_pressure(sleeve.outside, sleeve.thickness)
     if over <= allowed:
-        return _count("glass pressure", 1, f"sleeve {sleeve.outside * 1e3:.0f} x {sleeve.thickness * 1e3:.1f} mm bears "
-                      f"{allowed / 1e5:.2g} bar outside, {max(over, 0) / 1e5:.2g} bar gauge is asked; inner pressure by "
-                      f"tension {tube_pressure(sleeve.outside, sleeve.thickness) / 1e5:.2g} bar")
+        return _count(
+            "glass pressure",
+            1,
+            f"sleeve {sleeve.outside * 1e3:.0f} x {sleeve.thickness * 1e3:.1f} mm bears "
+            f"{allowed / 1e5:.2g} bar outside, {max(over, 0) / 1e5:.2g} bar gauge is asked; inner "
+            f"pressure by "
+            f"tension {tube_pressure(sleeve.outside, sleeve.thickness) / 1e5:.2g} bar",
+        )
     share = (over / allowed) ** (1 / 3)
-    return _count("glass pressure", math.ceil(case.vessel.parallel * share**2), f"sleeve bears {allowed / 1e5:.2g} bar, "
-                  f"{over / 1e5:.2g} bar gauge is asked: {1 / share:.2g} times the diameter at this thickness, or thicker glass")
+    return _count(
+        "glass pressure",
+        math.ceil(case.vessel.parallel * share**2),
+        f"sleeve bears {allowed / 1e5:.2g} bar, "
+        f"{over / 1e5:.2g} bar gauge is asked: {1 / share:.2g} times the diameter at this thickness, or "
+        f"thicker glass",
+    )
 
 
 def sleeve_pressure(outside, thickness):
     """
-    Return the outer pressure that a long glass cylinder bears: elastic buckling over the factor of the data [Pa].
+    Return the outer pressure that a long glass cylinder bears: elastic buckling over the factor of the data
+    [Pa].
 
     Examples
     --------
@@ -185,7 +247,8 @@ def tube_pressure(outside, thickness):
 
 def named_pipe(inside, tolerance=0.02):
     """
-    Return the pipe whose bore is nearest: {dn, nps, schedule, inside, outside, wall} in SI, None when none is near.
+    Return the pipe whose bore is nearest: {dn, nps, schedule, inside, outside, wall} in SI, None when none
+    is near.
 
     Examples
     --------
@@ -213,8 +276,14 @@ DN = {0.5: 15, 0.75: 20, 1: 25, 1.25: 32, 1.5: 40, 2: 50, 2.5: 65, 3: 80, 3.5: 9
 
 def _pipe(nps, schedule, bore, outside, wall):
     size = float(nps)
-    return {"dn": DN.get(size, round(25 * size)), "nps": int(size) if size == int(size) else size, "schedule": schedule,
-            "inside": bore, "outside": outside, "wall": wall}
+    return {
+        "dn": DN.get(size, round(25 * size)),
+        "nps": int(size) if size == int(size) else size,
+        "schedule": schedule,
+        "inside": bore,
+        "outside": outside,
+        "wall": wall,
+    }
 
 
 def pipe(nps, schedule=SCHEDULE):
@@ -239,9 +308,17 @@ def bores(case, probe):
             UA, wall = exchange(case, probe, count, shell_inside=one["inside"])
         except ReactorError:
             continue
-        rows.append({"pipe": one, "count": count, "gap": (one["inside"] - case.sleeve.outside) / 2,
-                     "velocity": velocity(case, probe) * area * case.vessel.parallel / (gap * count),
-                     "reynolds": float(wall.reynolds), "overall": float(wall.overall), "conductance": float(UA)})
+        rows.append(
+            {
+                "pipe": one,
+                "count": count,
+                "gap": (one["inside"] - case.sleeve.outside) / 2,
+                "velocity": velocity(case, probe) * area * case.vessel.parallel / (gap * count),
+                "reynolds": float(wall.reynolds),
+                "overall": float(wall.overall),
+                "conductance": float(UA),
+            }
+        )
     return rows
 
 
@@ -253,7 +330,14 @@ def series(case, probe):
             UA, wall = exchange(case, probe, total // passes)
         except ReactorError:
             continue
-        rows.append({"passes": passes, "parallel": total // passes, "conductance": float(UA * passes),
-                     "velocity": velocity(case, probe) * passes, "reynolds": float(wall.reynolds),
-                     "pressure_drop": float(probe["pressure_drop"] * passes**2.8)})
+        rows.append(
+            {
+                "passes": passes,
+                "parallel": total // passes,
+                "conductance": float(UA * passes),
+                "velocity": velocity(case, probe) * passes,
+                "reynolds": float(wall.reynolds),
+                "pressure_drop": float(probe["pressure_drop"] * passes**2.8),
+            }
+        )
     return rows

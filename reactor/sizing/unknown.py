@@ -21,8 +21,9 @@ class Unknown:
     """
     One input that may be changed.
 
-    `key` as in `--set`; `unit` as typed in the case; `start`, `low`, `high` in SI; `logarithmic` where it is searched
-    on a logarithmic scale; `whole` for a count; `along` are lit lengths that go with the length of the vessel.
+    `key` as in `--set`; `unit` as typed in the case; `start`, `low`, `high` in SI; `logarithmic` where it
+    is searched on a logarithmic scale; `whole` for a count; `along` are lit lengths that go with the length
+    of the vessel.
     """
 
     key: str
@@ -48,7 +49,9 @@ class Unknown:
 
 def put(case, unknowns, values):
     """Return the case with every unknown at its value [SI]."""
-    return cases.changed(case, [text for u, v in zip(unknowns, values, strict=True) for text in u.overrides(v)])
+    return cases.changed(
+        case, [text for u, v in zip(unknowns, values, strict=True) for text in u.overrides(v)]
+    )
 
 
 def unknown(case, key, between=None):
@@ -75,7 +78,8 @@ def unknown(case, key, between=None):
     start = _today(case, key) if typed is None else float(typed.si)
     if whole:
         low, high = float(kind.least), float(kind.most)
-        return Unknown(key, "-", start or low, *_range(kind, between, low, min(high, max(start or 1, 1) * 50)), True, True)
+        low, high = _range(kind, between, low, min(high, max(start or 1, 1) * 50))
+        return Unknown(key, "-", start or low, low, high, True, True)
     unit = _unit(typed, kind)
     low, high = kind.least, kind.most
     positive = (start or high) > 0 and low >= 0 and kind.si != "K"
@@ -92,8 +96,10 @@ def _range(kind, between, low, high):
     if between is None:
         return low, high
     try:
-        found = [float(kind.read(int(text) if isinstance(kind, Count) and text.strip().isdigit() else text).si)
-                 for text in between]
+        found = [
+            float(kind.read(int(text) if isinstance(kind, Count) and text.strip().isdigit() else text).si)
+            for text in between
+        ]
     except ValueError as error:
         raise CaseError(f"--between: {error}") from None
     if not found[0] < found[1]:
@@ -116,7 +122,9 @@ def _kind(case, key):
     else:
         cls = SINGLE.get(section) or MANY.get(section)
         if cls is None:
-            raise CaseError(f"--find {key}: {nearest(section, (*SINGLE, *MANY, 'feed'))}; write it like {EXAMPLES}")
+            raise CaseError(
+                f"--find {key}: {nearest(section, (*SINGLE, *MANY, 'feed'))}; write it like {EXAMPLES}"
+            )
         known = {item.name: item for item in fields(cls) if "kind" in item.metadata}
     if name not in known:
         raise CaseError(f"--find {key}: {nearest(name, known)}")
@@ -132,10 +140,14 @@ def _typed(case, key):
     """Return what the case says of a key; of several lamps the first."""
     section, *rest = key.split(".")
     if section in MANY and rest and not rest[0].isdigit():
-        found = [case.typed.get(f"{section}.{i}.{rest[-1]}") for i in range(1, 1 + len(getattr(case, section)))]
+        found = [
+            case.typed.get(f"{section}.{i}.{rest[-1]}") for i in range(1, 1 + len(getattr(case, section)))
+        ]
         values = {typed.si for typed in found if typed is not None}
         if len(values) > 1:
-            raise CaseError(f"--find {key}: the entries differ; name one of them, like {section}.1.{rest[-1]}")
+            raise CaseError(
+                f"--find {key}: the entries differ; name one of them, like {section}.1.{rest[-1]}"
+            )
         return found[0]
     return case.typed.get(key)
 
@@ -167,5 +179,8 @@ def _along(case, key):
     """Return the lit ends that lie at the outlet and go with it when the vessel's length is changed."""
     if key != "vessel.length":
         return ()
-    return tuple(f"lamp.{i}.lit_to" for i, lamp in enumerate(case.lamp, start=1)
-                 if f"lamp.{i}.lit_to" in case.typed and lamp.lit_to == case.vessel.length)
+    return tuple(
+        f"lamp.{i}.lit_to"
+        for i, lamp in enumerate(case.lamp, start=1)
+        if f"lamp.{i}.lit_to" in case.typed and lamp.lit_to == case.vessel.length
+    )
