@@ -9,10 +9,9 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor.errors import ReactorError
-from reactor.sizing import loop
 from reactor.sizing.data import cited, practice
 from reactor.sizing.light import of_fresh
+from reactor.sizing.probe import many
 
 FLOWS = (0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 1.0, 1.1)
 SHARES = (1.0, 0.85, 0.7, 0.55, 0.4, 0.25, 0.12)  # of fresh light, where the slip is rated
@@ -31,11 +30,9 @@ def at_flow(case, factor):
 
 def turndown(case, probe, result, options):
     """Return slip, temperatures and skin from 40 to 110 % flow."""
-    rows, warm = [], loop.Warm()
-    for factor in FLOWS:
-        try:
-            found = loop.probe(at_flow(case, factor), warm)
-        except ReactorError:
+    rows = []
+    for factor, found in zip(FLOWS, many([at_flow(case, factor) for factor in FLOWS]), strict=True):
+        if found is None:
             continue
         rows.append(
             {
@@ -123,14 +120,12 @@ def slip_of_light(case):
 
     Rated at `SHARES`, straight in logarithms between.
     """
-    known, warm = [], loop.Warm()
-    for share in SHARES:
-        try:
-            known.append(
-                (math.log(share), math.log(loop.probe(of_fresh(case, share), warm)["chlorine_slip"]))
-            )
-        except ReactorError:
-            continue
+    looks = many([of_fresh(case, share) for share in SHARES])
+    known = [
+        (math.log(share), math.log(max(one["chlorine_slip"], 1e-300)))
+        for share, one in zip(SHARES, looks, strict=True)
+        if one is not None
+    ]
     x, y = (np.array(column) for column in zip(*sorted(known), strict=True))
 
     def slip(share):

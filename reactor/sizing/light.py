@@ -6,10 +6,10 @@ from itertools import pairwise
 from reactor import case as cases
 from reactor.errors import ReactorError
 from reactor.sizing import loop, search
+from reactor.sizing.probe import many
 
-HALF = math.log(10) / 2  # half a decade of slip between neighbouring points of the curve
 LOWEST, HIGHEST = 5e-5, 0.5  # slip: the curve spans these four decades, or as far as light reaches
-AT_MOST = 12  # points of the curve on either side of the design
+REACH = 12  # thirds of a decade of lamp power looked at on either side of the design
 VOLUMES = (0.5, 0.7, 1.4, 2.0, 4.0)  # of the design volume, for the trade
 
 
@@ -34,42 +34,33 @@ def lamp_curve(case, probe, result, options):
     """
     if not case.lamp:
         return {"curve": [], "points": [], "remark": "the case has no lamp"}
-    design = _row(probe)
-    warm = loop.Warm()
-    rows = sorted(
-        [*_walk(case, design, 1.0, warm), design, *_walk(case, design, -1.0, warm)],
-        key=lambda row: row["electrical"],
+    factors = [10 ** (k / 3) for k in range(-REACH, REACH + 1) if k]
+    aged = [("fresh lamp", 1.0), ("lamp at 70 % of fresh", 0.7)]
+    looks = many([dimmed(case, f) for f in factors] + [of_fresh(case, share) for _, share in aged])
+    rows = _spanned(
+        sorted(
+            [_row(one) for one in [*looks[: len(factors)], probe] if one is not None],
+            key=lambda row: row["electrical"],
+        )
     )
     for row, other in pairwise(rows):
         if other["slip"] < row["slip"]:
-            row["law"] = -math.log(other["electrical"] / row["electrical"]) / math.log(
-                other["slip"] / row["slip"]
-            )
+            more = math.log(other["electrical"] / row["electrical"])
+            row["law"] = -more / math.log(other["slip"] / row["slip"])
     points = [_point("end of life (design)", case, probe)]
-    for name, share in (("fresh lamp", 1.0), ("lamp at 70 % of fresh", 0.7)):
-        aged = of_fresh(case, share)
-        points.append(_point(name, aged, loop.probe(aged, warm)))
+    points += [
+        _point(name, of_fresh(case, share), one)
+        for (name, share), one in zip(aged, looks[len(factors) :], strict=True)
+        if one is not None
+    ]
     return {"curve": rows, "points": points}
 
 
-def _walk(case, design, direction, warm):
-    """Return further rows, half a decade of slip apart, to more (1) or less (-1) light than the design's."""
-    rows, factor, law = [design], 1.0, 1.0
-    while len(rows) <= AT_MOST and not (
-        rows[-1]["slip"] < LOWEST if direction > 0 else rows[-1]["slip"] > HIGHEST
-    ):
-        move = direction * HALF * min(max(law, 0.1), 3.0)
-        try:
-            new = _row(loop.probe(dimmed(case, factor * math.exp(move)), warm))
-        except ReactorError:
-            break
-        change = direction * math.log(rows[-1]["slip"] / max(new["slip"], 1e-300))
-        if change < 1e-3:  # light makes no difference any more: thermal starts, or nothing left
-            break
-        law = HALF * min(max(law, 0.1), 3.0) / change
-        factor *= math.exp(move)
-        rows.append(new)
-    return rows[1:]
+def _spanned(rows):
+    """Return the rows between the ends of the wanted slips, and one beyond on either side."""
+    first = max((i for i, row in enumerate(rows) if row["slip"] >= HIGHEST), default=0)
+    last = min((i for i, row in enumerate(rows) if row["slip"] <= LOWEST), default=len(rows) - 1)
+    return rows[first : last + 1]
 
 
 def _row(probe):

@@ -203,7 +203,7 @@ class _Tear:
         return fresh * self.fraction, recycle
 
     def _closed(self, fresh, recycle):
-        """Return the case with its alkane stream cut to the fresh gas and the recycle as a stream of its own."""
+        """Return the case with its alkane stream cut to the fresh gas and the recycle beside it."""
         case, species = self.case, self.gas.species
         feed = dict(case.feed)
         name = case.recycle.stream

@@ -3,8 +3,10 @@
 from functools import cached_property
 
 from reactor import chemistry, units
+from reactor.errors import ReactorError
 from reactor.models import SOLVERS
 from reactor.models.assemble import mixed_feed
+from reactor.models.plug_flow import solve_many
 from reactor.rating import figures, hazard
 from reactor.rating.plant import lamps, plant
 
@@ -27,12 +29,11 @@ class Probe:
     are asked for.
     """
 
-    def __init__(self, case):
-        self.case = case
-        self.gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
-        self.plant = plant(case, self.gas, lamps(case))
+    def __init__(self, case, equipment=None, profile=None):
+        self.case, self.plant = case, equipment or plant_of(case)
+        self.gas = self.plant.gas
         self.feed = mixed_feed(case, self.gas)
-        self.profile = SOLVERS[case.vessel.kind](case, self.plant, look_further=False)
+        self.profile = profile or SOLVERS[case.vessel.kind](case, self.plant, look_further=False)
         self._found = {}
 
     @cached_property
@@ -81,14 +82,36 @@ class Probe:
         )
 
 
-def many(cases):
-    """Return a `Probe` of every case of a curve; None where the case cannot be solved."""
-    from reactor.errors import ReactorError
+def plant_of(case):
+    """Return the equipment of a case."""
+    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    return plant(case, gas, lamps(case))
 
-    found: list[Probe | None] = []
+
+def many(cases):
+    """Return a `Probe` of every case of a curve, None where it cannot be solved: one batch of the kernel for tubes."""
+    if any(c.vessel.kind != "plug flow" or c.cooling.mode == "counter-current" or c.recycle for c in cases):
+        return [_alone(case) for case in cases]
+    made = []
     for case in cases:
         try:
-            found.append(Probe(case))
+            made.append((case, plant_of(case)))
         except ReactorError:
-            found.append(None)
+            made.append((case, None))
+    good = [(case, equipment) for case, equipment in made if equipment is not None]
+    profiles = iter(solve_many([case for case, _ in good], [equipment for _, equipment in good]))
+    found: list[Probe | None] = []
+    for case, equipment in made:
+        profile = None if equipment is None else next(profiles)
+        found.append(None if profile is None or isinstance(profile, str) else Probe(case, equipment, profile))
     return found
+
+
+def _alone(case):
+    """Return the `Probe` of one case, its recycle closed; None where it cannot be solved."""
+    from reactor.sizing import loop
+
+    try:
+        return loop.probe(case)
+    except ReactorError:
+        return None

@@ -115,7 +115,7 @@ def _walk(f, start, low, high, most):
             if abs(f(new)) >= abs(f(x)) * (1 - 1e-9):  # away from the target: turn round, or give up there
                 limits[direction] = "the result turns away from the target"
                 break
-            step = min(max(1.2 * abs(f(new) / slope), 0.05), reach)
+            step = min(max(1.2 * abs(f(new) / slope), 0.05 if x == start else 1.6 * step), reach)
             x = new
         else:
             limits[direction] = "the trials allowed are used up; narrow the range with --between"
@@ -192,8 +192,9 @@ def _guess(f, a, b, last):
 
 def several(trial, start, low, high, most=30):
     """
-    Return the `Root` of as many gaps as unknowns: Newton's rule on differences, then Broyden's update,
-    damped.
+    Return the `Root` of as many gaps as unknowns.
+
+    Newton's rule on differences, then Broyden's update, damped.
 
     Parameters
     ----------
@@ -254,7 +255,11 @@ def _differences(f, x, gap, low, high):
 
 
 def _downhill(f, x, gap, step, low, high):
-    """Return the first place along a step that is nearer to the targets, and its gaps; None when there is none."""
+    """
+    Return the first place along a step that is nearer to the targets, and its gaps.
+
+    None when there is none.
+    """
     for share in (1.0, 0.4, 0.1):
         new = np.clip(x + share * step, low, high)
         if np.abs(new - x).max() < 1e-12:

@@ -1,4 +1,8 @@
-"""Stirred tank, tanks in series and plug flow side by side: the same gas volume, the same lamps, the same feed."""
+"""
+Stirred tank, tanks in series and plug flow side by side.
+
+The same gas volume, the same lamps, the same feed.
+"""
 
 import copy
 
@@ -11,7 +15,6 @@ from reactor.sizing.data import practice
 from reactor.sizing.light import needed
 
 NUMBERS = (1, 3, 10)  # tanks that share the volume
-SEARCHED = (1, 3, None)  # where the lamp power for the same slip is searched; None is plug flow
 
 
 def remade(case, edit):
@@ -96,7 +99,7 @@ def kinds(case, probe, result, options):
                 }
             )
             continue
-        there = needed(other, slip)[1] if case.lamp and number in SEARCHED else None
+        there = needed(other, slip)[1] if case.lamp else None
         rows.append(
             {
                 "kind": name,
@@ -105,7 +108,7 @@ def kinds(case, probe, result, options):
                 "hottest": found["temperature_hottest"],
                 "electrical": found["light_electrical"],
                 "electrical_same_slip": None if there is None else there["light_electrical"],
-                "searched": bool(case.lamp) and number in SEARCHED,
+                "searched": bool(case.lamp),
                 "poly_same_slip": None if there is None else there["poly_share_mol"],
                 "worst_chlorine": float(found.profile.concentrations[:, found.gas.index["Cl2"]].max()),
                 "why": "",

@@ -1,4 +1,8 @@
-"""Targets in, inputs out: the search over rated cases, and the plain record of what was found or what binds."""
+"""
+Targets in, inputs out.
+
+The search over rated cases, and the plain record of what was found or what binds.
+"""
 
 import math
 from typing import NamedTuple

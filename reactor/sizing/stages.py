@@ -1,6 +1,7 @@
 """
-Chlorine in stages: a train of tubes with cooling between them, or injections along one tube, under a cap on
-chlorine.
+Chlorine in stages.
+
+A train of tubes with cooling between them, or injections along one tube, under a cap on chlorine.
 
 Every stage is the vessel of the case, rated on what the stage before it left, molecules and radicals, plus
 its share of the chlorine. The chain keeps the number of moles, so n stages at a mole fraction x after each
@@ -45,7 +46,11 @@ def count(before, chlorine, cap):
 
 
 def stages(case, probe, result, options):
-    """Return the stage table of the train, its product split beside that of all chlorine at once, and the price."""
+    """
+    Return the stage table of the train, its product split beside that of all chlorine at once.
+
+    And the price.
+    """
     split = split_feed(case)
     if split is None or case.vessel.kind != "plug flow":
         return {
@@ -81,7 +86,11 @@ def stages(case, probe, result, options):
 
 
 def split_feed(case):
-    """Return (all gas but the chlorine stream as one feed, the chlorine stream), None where that cannot be told."""
+    """
+    Return (all gas but the chlorine stream as one feed, the chlorine stream).
+
+    None where that cannot be told.
+    """
     bring = carriers(case.feed)
     if len(bring) != 1:
         return None

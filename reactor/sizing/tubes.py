@@ -66,7 +66,11 @@ def exchange(case, probe, parallel=None, **sizes):
 
 
 def heat_to_remove(case, probe):
-    """Return the heat [W] that walls must take to hold limits.hottest at the outlet, and the mean driving difference [K]."""
+    """
+    Return the heat [W] that walls must take to hold limits.hottest at the outlet.
+
+    And the mean driving difference [K].
+    """
     limit, gas, feed = case.limits.hottest, probe.gas, probe.feed
     capacity = float(feed.moles @ gas.heat_capacity((feed.temperature + limit) / 2))
     released = (
@@ -78,7 +82,11 @@ def heat_to_remove(case, probe):
 
 
 def by_heat(case, probe):
-    """Return the count at which the wall area takes what the gas may not keep, U computed anew for every count."""
+    """
+    Return the count at which the wall area takes what the gas may not keep.
+
+    U computed anew for every count.
+    """
     if case.limits.hottest is None:
         return _count("heat", None, "limits.hottest is not stated", asked=False)
     surplus, drive = heat_to_remove(case, probe)
@@ -145,7 +153,11 @@ def velocity(case, probe):
 
 
 def by_light(case, probe):
-    """Return the count at which the lamp heat leaves every sleeve's skin below its limit, total power held."""
+    """
+    Return the count at which the lamp heat leaves every sleeve's skin below its limit.
+
+    Total power held.
+    """
     if not case.lamp or probe.plant.wall.skin is None:
         return _count("light", None, "no lamp", asked=False)
     limit = skin_limit(case, probe)
@@ -228,8 +240,9 @@ def by_glass(case, probe):
 
 def sleeve_pressure(outside, thickness):
     """
-    Return the outer pressure that a long glass cylinder bears: elastic buckling over the factor of the data
-    [Pa].
+    Return the outer pressure that a long glass cylinder bears.
+
+    Elastic buckling over the factor of the data [Pa].
 
     Examples
     --------
@@ -247,8 +260,9 @@ def tube_pressure(outside, thickness):
 
 def named_pipe(inside, tolerance=0.02):
     """
-    Return the pipe whose bore is nearest: {dn, nps, schedule, inside, outside, wall} in SI, None when none
-    is near.
+    Return the pipe whose bore is nearest.
+
+    {dn, nps, schedule, inside, outside, wall} in SI, None when none is near.
 
     Examples
     --------

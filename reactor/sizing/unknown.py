@@ -1,4 +1,8 @@
-"""An input as an unknown: where it stands, in which unit it is typed, how far it may go, and a case with it changed."""
+"""
+An input as an unknown.
+
+Where it stands, in which unit it is typed, how far it may go, and a case with it changed.
+"""
 
 import re
 from dataclasses import dataclass, fields
