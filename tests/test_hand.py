@@ -2,7 +2,6 @@
 
 import pytest
 from conftest import CASES
-from pytest import approx
 
 import reactor
 from reactor.rating.hand import hand
@@ -14,14 +13,14 @@ def lines(rated, name):
 
 
 def test_the_hand_case_of_methane_ten_to_one_is_reproduced(rated):
-    # Source: hand case (memory constants), all chlorine used: duty 40.2 kW, rise 244 K, poly 18 mol%, HCl 52.3 kg/h;
-    # here 2.8 % of the chlorine is left. Evidence: worked, transcription check of the rules.
+    # Source: hand case (memory constants), all chlorine used: duty 40.2 kW, rise 244 K, poly 18 mol%, HCl
+    # 52.3 kg/h; here 2.8 % of the chlorine is left. Evidence: worked, transcription check of the rules.
     found = lines(rated, "lapwing_ten")
-    assert found["heat of reaction"].hand == approx(40.2 * 0.972, rel=0.02)
-    assert found["adiabatic rise"].hand == approx(244, rel=0.02)
-    assert found["poly share by mol"].hand == approx(18, rel=0.05)
-    assert found["HCl"].hand == approx(52.3 * 0.972, rel=0.01)
-    assert found["absorbed at the inlet"].hand == approx(76, rel=0.05)
+    assert found["heat of reaction"].hand == pytest.approx(40.2 * 0.972, rel=0.02)
+    assert found["adiabatic rise"].hand == pytest.approx(244, rel=0.02)
+    assert found["poly share by mol"].hand == pytest.approx(18, rel=0.05)
+    assert found["HCl"].hand == pytest.approx(52.3 * 0.972, rel=0.01)
+    assert found["absorbed at the inlet"].hand == pytest.approx(76, rel=0.05)
 
 
 @pytest.mark.parametrize(
@@ -30,8 +29,8 @@ def test_the_hand_case_of_methane_ten_to_one_is_reproduced(rated):
 def test_flows_and_heat_agree_with_the_hand_rules_within_ten_per_cent(name, rated):
     # Evidence: worked; the rules and their constants are remembered, not the model's.
     found = lines(rated, name)
-    assert found["HCl"].ratio == approx(1, abs=0.10)
-    assert found["heat of reaction"].ratio == approx(1, abs=0.10)
+    assert found["HCl"].ratio == pytest.approx(1, abs=0.10)
+    assert found["heat of reaction"].ratio == pytest.approx(1, abs=0.10)
 
 
 @pytest.mark.parametrize("name", ["lapwing", "lapwing_ten", "dunnock_tube"])

@@ -66,12 +66,22 @@ def solve_many(cases, plants):
         if case.cooling.mode == "counter-current":
             raise ValueError("coolant against the gas cannot be marched in one go; use solve")
         tube, inlet = _tube(case, plant), assemble.mixed_inlet(case, plant.gas)
-        flow = inlet.mass(plant.gas)
-        made.append((tube, inlet, Job(tube, inlet.moles / flow, inlet.temperature, case.cooling.inlet or inlet.temperature,
-                                      case.vessel.pressure, flow / case.vessel.parallel, assemble.budget(case))))
+        flow, T = inlet.mass(plant.gas), inlet.temperature
+        job = Job(
+            tube,
+            inlet.moles / flow,
+            T,
+            case.cooling.inlet or T,
+            case.vessel.pressure,
+            flow / case.vessel.parallel,
+            assemble.budget(case),
+        )
+        made.append((tube, inlet, job))
     paths = integrate_many([job for _, _, job in made], between=1)
-    return [path if isinstance(path, str) else _profile(case, plant.gas, tube, inlet, path, ())
-            for case, plant, (tube, inlet, _), path in zip(cases, plants, made, paths, strict=True)]
+    return [
+        path if isinstance(path, str) else _profile(case, plant.gas, tube, inlet, path, ())
+        for case, plant, (tube, inlet, _), path in zip(cases, plants, made, paths, strict=True)
+    ]
 
 
 def _tube(case, plant):

@@ -9,7 +9,7 @@ NAMES = {"temperature_hottest": "hottest gas"}
 
 def render(result, emphasis=str):
     """Return the page of a result with a block `sizing`, 80 columns."""
-    block = result.sizing
+    block = plain(result.sizing)
     parts = [terminal.title(result, emphasis), found(block["found"], emphasis)]
     parts += [PAGES[name](block[name], emphasis) for name in PAGES if name in block]
     parts += [
@@ -28,6 +28,14 @@ def render(result, emphasis=str):
         "The rated case in full: reactor rate, with the same --set or the case that --write gives.\n"
     )
     return "\n".join(part for part in parts if part) + "\n"
+
+
+def plain(node):
+    """Return records with bare numbers in place of {value, unit}."""
+    if isinstance(node, dict):
+        whole = set(node) == {"value", "unit"}
+        return node["value"] if whole else {key: plain(value) for key, value in node.items()}
+    return [plain(value) for value in node] if isinstance(node, list | tuple) else node
 
 
 def per_cent(value, digits=3):
@@ -116,7 +124,7 @@ def trade(one, emphasis):
     rows = [f"{'litres':>10}{'length m':>10}{'mains kW':>10}{'W into gas':>12}{'W x L':>12}{'stay s':>10}"]
     rows += [
         f"{figure(r['volume'] * 1e3):>10}{figure(r['length']):>10}{figure(r['electrical'] / 1e3):>10}"
-        f"{figure(r['into_gas']):>12}{figure(r['watts_times_litres']):>12}{figure(r['residence_time']):>10}"
+        f"{figure(r['into_gas']):>12}{figure(r['watts_times_volume'] * 1e3):>12}{figure(r['residence_time']):>10}"
         for r in one["rows"]
     ]
     return section(f"LAMPS OR STEEL: slip {per_cent(one['slip'])} throughout", rows, emphasis)
@@ -242,7 +250,8 @@ def stages(one, emphasis):
         paragraph(
             f"{one['count']} stages by the formula for {100 * one['cap']:.3g} mol% of chlorine after an "
             f"injection "
-            f"(diluent {figure(one['diluent'], 3)} and chlorine {figure(one['chlorine'], 3)} mol per mol of "
+            f"(diluent {figure(one['diluent_per_alkane'], 3)} and chlorine "
+            f"{figure(one['chlorine_per_alkane'], 3)} mol per mol of "
             "alkane)"
         )
     ]

@@ -9,6 +9,7 @@ from reactor.sizing import loop, search
 from reactor.sizing.probe import many
 
 LOWEST, HIGHEST = 5e-5, 0.5  # slip: the curve spans these four decades, or as far as light reaches
+MOST = 1e6  # W a lamp; more is no lamp
 REACH = 12  # thirds of a decade of lamp power looked at on either side of the design
 VOLUMES = (0.5, 0.7, 1.4, 2.0, 4.0)  # of the design volume, for the trade
 
@@ -34,7 +35,8 @@ def lamp_curve(case, probe, result, options):
     """
     if not case.lamp:
         return {"curve": [], "points": [], "remark": "the case has no lamp"}
-    factors = [10 ** (k / 3) for k in range(-REACH, REACH + 1) if k]
+    most = MOST / max(lamp.power for lamp in case.lamp)
+    factors = [f for k in range(-REACH, REACH + 1) if k and (f := 10 ** (k / 3)) < most]
     aged = [("fresh lamp", 1.0), ("lamp at 70 % of fresh", 0.7)]
     looks = many([dimmed(case, f) for f in factors] + [of_fresh(case, share) for _, share in aged])
     rows = _spanned(
@@ -155,7 +157,7 @@ def _litres(probe):
         "length": probe.case.vessel.length,
         "electrical": probe["light_electrical"],
         "into_gas": watts,
-        "watts_times_litres": watts * volume * 1e3,
+        "watts_times_volume": watts * volume,
         "slip": probe["chlorine_slip"],
         "residence_time": probe["residence_time"],
     }

@@ -120,7 +120,7 @@ def condenser(probe):
         "pressure": out.pressure,
         "dew_points": rows,
         "coldest_wall": coldest,
-        "margin": None if rows[0]["temperature"] is None else coldest - rows[0]["temperature"],
+        "dew_margin": None if rows[0]["temperature"] is None else coldest - rows[0]["temperature"],
         "sensible_heat": cooling,
         "latent_heat": float(_latent(liquid, gas, T)),
         "liquid": {

@@ -89,7 +89,7 @@ def plant_of(case):
 
 
 def many(cases):
-    """Return a `Probe` of every case of a curve, None where it cannot be solved: one batch of the kernel for tubes."""
+    """Return a `Probe` of every case, None where it cannot be solved; tubes in one batch of the kernel."""
     if any(c.vessel.kind != "plug flow" or c.cooling.mode == "counter-current" or c.recycle for c in cases):
         return [_alone(case) for case in cases]
     made = []

@@ -4,6 +4,7 @@ from dataclasses import dataclass, replace
 
 from reactor.rating import rate
 from reactor.sizing import goals, loop
+from reactor.sizing.quantities import quantities
 from reactor.sizing.size import size
 
 PLAIN = ("light", "tubes", "loads")  # printed with every sized result
@@ -52,7 +53,7 @@ def run(case, find=(), wanted=(), keeps=(), between=None, parts=PLAIN, options=O
     block = {"found": found.record} | tables(found.case, found.probe, result, asked, options)
     if closed.recycle is not None:
         block["loop"] = loop.record(found.probe)
-    return replace(result, sizing=block, identity=result.identity | {"case": found.case.hash()})
+    return replace(result, sizing=quantities(block), identity=result.identity | {"case": found.case.hash()})
 
 
 def tables(case, probe, result, parts, options):

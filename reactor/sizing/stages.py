@@ -51,13 +51,14 @@ def stages(case, probe, result, options):
 
     And the price.
     """
+    case = probe.case  # with its recycle closed
     split = split_feed(case)
     if split is None or case.vessel.kind != "plug flow":
         return {
             "count": 0,
             "cap": options.cap,
-            "diluent": 0.0,
-            "chlorine": 0.0,
+            "diluent_per_alkane": 0.0,
+            "chlorine_per_alkane": 0.0,
             "stages": [],
             "split": {},
             "remarks": ["stages need plug flow and one stream of chlorine without alkane"],
@@ -74,8 +75,8 @@ def stages(case, probe, result, options):
         "count": number,
         "cap": options.cap,
         "share": share,
-        "diluent": (before - alkane) / alkane,
-        "chlorine": total / alkane,
+        "diluent_per_alkane": (before - alkane) / alkane,
+        "chlorine_per_alkane": total / alkane,
         "between": between,
         "stages": rows,
     }
