@@ -164,7 +164,8 @@ WRONG = [
     (swapped('"36 mol/s"', '"0 mol/s"'),
      'case.toml:7: feed.alkane.flow: "0 mol/s": a flow is more than 0; write it like "100 kg/h"'),
     (swapped('"plug flow"', '"plugflow"'),
-     'case.toml:16: vessel.kind: "plugflow": did you mean "plug flow"? write "plug flow" or "stirred tank" or "tanks in series"'),
+     'case.toml:16: vessel.kind: "plugflow": did you mean "plug flow"? write "plug flow" or "stirred '
+     'tank" or "tanks in series"'),
     (swapped('"LED 365 nm"', '"LED 356 nm"'),
      "case.toml:23: lamp.1.kind: \"LED 356 nm\": unknown; "
      "did you mean 'LED 395 nm' or 'LED 385 nm' or 'LED 365 nm'?"),

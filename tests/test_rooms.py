@@ -32,8 +32,7 @@ FILES = sorted(p for p in PACKAGE.rglob("*.py") if p.name != "__main__.py" and p
 
 
 def room(path):
-    name = path.relative_to(PACKAGE).parts[0].removesuffix(".py")
-    return "cli" if name.startswith("cli_") else name
+    return path.relative_to(PACKAGE).parts[0].removesuffix(".py")
 
 
 def imported(path):
@@ -41,7 +40,7 @@ def imported(path):
     for node in ast.walk(ast.parse(path.read_text())):
         if isinstance(node, ast.ImportFrom) and (node.module or "").split(".")[0] == "reactor":
             inner = node.module.split(".")[1:]
-            yield from [inner[0].split("_")[0]] if inner else [alias.name for alias in node.names]
+            yield from [inner[0]] if inner else [alias.name for alias in node.names]
         elif isinstance(node, ast.Import):
             yield from (a.name.split(".")[1] for a in node.names if a.name.startswith("reactor."))
 

@@ -426,3 +426,50 @@ def test_every_number_of_the_block_has_a_unit_and_every_table_prints():
     ):
         assert heading in page
     assert result.sizing["loads"]["absorber"]["acid"]["unit"] == "kg/h"
+
+
+# The command
+
+
+@pytest.fixture
+def command(monkeypatch, capsys):
+    """Return a function: words of a `reactor size` command line -> (exit code, output, errors)."""
+
+    def call(*words):
+        from reactor.cli import main
+
+        monkeypatch.setattr("sys.argv", ["reactor", "size", *words])
+        with pytest.raises(SystemExit) as stop:
+            main()
+        out, err = capsys.readouterr()
+        return stop.value.code or 0, out, err
+
+    return call
+
+
+def test_a_bare_size_reads_targets_and_limits_from_the_case(command, tmp_path):
+    file = tmp_path / "sized.toml"
+    code, out, _ = command(str(TEN), "--write", str(file), "--show", "trade")
+    assert code == 0
+    assert "keeps temperature_hottest<250 degC" in out
+    assert "LAMPS OR STEEL" in out
+    assert all(len(line) <= 80 for line in out.splitlines())
+    assert reactor.rate(reactor.load(file))["chlorine_slip"] == pytest.approx(0.01, rel=1e-6)
+
+
+@pytest.mark.parametrize(
+    ("words", "code", "said"),
+    [
+        (["--find", "lamp.power", "--for", "chlorine_slip=1 %", "--between", "10 W..100 W"], 1, "nearest is lamp.power"),
+        (["--find", "lamp.power", "--for", "chlorine_slip=5 %", "--keep", "chlorine_slip<2 %"], 1, "contradict"),
+        (["--set", "feed.methane.flow=0 kg/h"], 2, "more than 0"),
+        (["--find", "lamp.power", "--for", "slip=1 %"], 2, "did you mean 'chlorine_slip'"),
+        (["--show", "everything"], 2, "known here"),
+        (["--between", "1 W"], 2, "write both ends"),
+        (["--cap", "5 K"], 2, "--cap"),
+    ],
+)
+def test_what_cannot_be_sized_ends_with_its_code_and_its_sentence(words, code, said, command):
+    found, out, err = command(str(TEN), *words)
+    assert found == code
+    assert said in " ".join((out + err).split())

@@ -24,17 +24,17 @@ def render(result, emphasis=str):
             terminal.cautions,
         )
     ]
-    parts.append(
-        "The rated case in full: reactor rate, with the same --set or the case that --write gives.\n"
-    )
+    parts.append("The case in full: reactor rate, with the same --set or the file of --write.\n")
     return "\n".join(part for part in parts if part) + "\n"
 
 
 def plain(node):
     """Return records with bare numbers in place of {value, unit}."""
     if isinstance(node, dict):
-        whole = set(node) == {"value", "unit"}
-        return node["value"] if whole else {key: plain(value) for key, value in node.items()}
+        if set(node) == {"value", "unit"}:
+            value = node["value"]
+            return int(value) if node["unit"] == "1" and value is not None and value == int(value) else value
+        return {key: plain(value) for key, value in node.items()}
     return [plain(value) for value in node] if isinstance(node, list | tuple) else node
 
 
@@ -55,34 +55,26 @@ def found(one, emphasis):
     if one["solved"]:
         rows += [line(key, value, f"was {one['before'][key]}") for key, value in one["inputs"].items()]
         rows += [line(f"gives {t['name']}", t["got"], f"wanted {t['wanted']}") for t in one["targets"]]
-        rows += [
-            paragraph(f"{key} is a whole number: the target is passed there, not met") for key in one["whole"]
-        ]
+        rows += [paragraph(f"{key} is a whole number: the target is passed there, not met") for key in one["whole"]]
     else:
         near = ", ".join(f"{key} = {value}" for key, value in one["inputs"].items())
         got = ", ".join(f"{t['name']} = {t['got']}" for t in one["targets"])
         rows.append(
             paragraph(
                 emphasis(
-                    f"no solution in this range for {wanted}; nearest is {near} with {got}, limited by "
-                    f"{one['limited_by']}"
+                    f"no solution in this range for {wanted}; nearest is {near} with {got}, limited by {one['limited_by']}"
                 )
             )
         )
         if one["target_met_at"]:
             rows.append(
-                paragraph(
-                    "the target alone is met at "
-                    + ", ".join(f"{k} = {v}" for k, v in one["target_met_at"].items())
-                )
+                paragraph("the target alone is met at " + ", ".join(f"{k} = {v}" for k, v in one["target_met_at"].items()))
             )
     rows += [
         line(f"keeps {c['name']}{c['relation']}{c['wanted']}", c["got"], "holds" if c["holds"] else "BROKEN")
         for c in one["constraints"]
     ]
-    rows += (
-        [paragraph(f"{', '.join(one['along'])} goes with the length of the vessel")] if one["along"] else []
-    )
+    rows += [paragraph(f"{', '.join(one['along'])} goes with the length of the vessel")] if one["along"] else []
     rows.append(f"{one['ratings']} rated cases")
     if not one["solved"]:
         rows += ["", "the curve that was seen:"] + [
@@ -112,8 +104,7 @@ def light(one, emphasis):
             line(
                 p["name"],
                 per_cent(p["slip"]),
-                f"light {100 * p['light']:.0f} %, {figure(p['into_gas'])} W into "
-                f"gas, hottest {degrees(p['hottest'])} degC",
+                f"light {100 * p['light']:.0f} %, {figure(p['into_gas'])} W into gas, hottest {degrees(p['hottest'])} degC",
             )
         )
     return section("LAMP POWER AGAINST CHLORINE SLIP", rows, emphasis)
@@ -200,9 +191,7 @@ def loads(one, emphasis):
     ]
     for d in c["dew_points"]:
         dew = "none above -100 degC" if d["temperature"] is None else f"{degrees(d['temperature'])} degC"
-        rows.append(
-            line(f"dew point, {d['where']}", dew, "" if d["species"] is None else f"{d['species']} first")
-        )
+        rows.append(line(f"dew point, {d['where']}", dew, "" if d["species"] is None else f"{d['species']} first"))
     rows.append(line("coldest wall", f"{degrees(c['coldest_wall'])} degC"))
     rows.append(
         line(
@@ -217,18 +206,15 @@ def loads(one, emphasis):
 
 def loop(one, emphasis):
     """Print the stream table of a closed recycle."""
-    rows = [f"{'stream':<28}{'mol/s':>10}{'kg/h':>10}{'Nm3/h':>10}   largest shares, mol%"]
+    rows = [f"{'stream':<25}{'mol/s':>8}{'kg/h':>8}{'Nm3/h':>8}  largest shares, mol%"]
     for s in one["streams"]:
         top = sorted(s["composition"].items(), key=lambda item: -item[1])[:3]
-        shares = ", ".join(f"{species} {100 * n / max(s['moles'], 1e-300):.3g}" for species, n in top)
+        shares = ", ".join(f"{species} {100 * n / max(s['moles'], 1e-300):.2g}" for species, n in top)
         rows.append(
-            f"{s['name']:<28}{figure(s['moles']):>10}{figure(s['mass']):>10}"
-            f"{figure(s['normal_volume']):>10}   {shares}"
+            f"{s['name']:<25}{figure(s['moles'], 3):>8}{figure(s['mass'], 3):>8}{figure(s['normal_volume'], 3):>8}  {shares}"
         )
     rows.append(line("recycle to fresh gas, mol/mol", figure(one["recycle_ratio"])))
-    rows.append(
-        line("alkane lost in the purge", per_cent(one["alkane_lost_in_purge"]), "of the fresh alkane")
-    )
+    rows.append(line("alkane lost in the purge", per_cent(one["alkane_lost_in_purge"]), "of the fresh alkane"))
     rows += [
         line(f"{s} in the recycle", per_cent(b["loop"]), f"{per_cent(b['fresh'])} of what is fed")
         for s, b in one["build_up"].items()
@@ -296,13 +282,15 @@ def kinds(one, emphasis):
 
 def lamps(one, emphasis):
     """Print the electrical power that each kind of lamp, or each gap, asks for."""
-    rows = [f"{'lamp':<28}{'gap mm':>8}{'mains kW':>10}{'W into gas':>12}{'absorbed W':>12}{'depth in':>10}"]
+    rows = [f"{'lamp':<35}{'gap mm':>7}{'mains kW':>9}{'W into gas':>11}{'absorbed':>9}{'depth':>8}"]
     for r in one["rows"]:
-        need = "no use" if r["electrical"] is None else figure(r["electrical"] / 1e3)
+        cells = ["no use", "-", "-", "-"]
+        if r["electrical"] is not None:
+            cells = [figure(r["electrical"] / 1e3, 3), *(figure(r[k], 3) for k in ("into_gas", "absorbed", "depth"))]
+        widths = (9, 11, 9, 8)
         rows.append(
-            f"{r['lamp']:<28}{r['gap'] * 1e3:>8.0f}{need:>10}{figure(r['into_gas']):>12}"
-            f"{figure(r['absorbed']):>12}"
-            f"{figure(r['depth'], 3):>10}"
+            f"{r['lamp']:<35}{r['gap'] * 1e3:>7.0f}"
+            + "".join(f"{cell:>{width}}" for cell, width in zip(cells, widths, strict=True))
         )
     rows += [paragraph(text, "- ") for text in one["remarks"]]
     return section(f"{one['title'].upper()}: slip {per_cent(one['slip'])} throughout", rows, emphasis)
@@ -310,10 +298,7 @@ def lamps(one, emphasis):
 
 def turndown(one, emphasis):
     """Print the turndown curve."""
-    rows = [
-        f"{'flow':>6}{'slip':>11}{'poly mol':>10}{'hottest C':>10}{'outlet C':>9}"
-        f"{'skin C':>8}{'absorbed W':>12}"
-    ]
+    rows = [f"{'flow':>6}{'slip':>11}{'poly mol':>10}{'hottest C':>10}{'outlet C':>9}{'skin C':>8}{'absorbed W':>12}"]
     rows += [
         f"{100 * r['flow']:>5.0f}%{per_cent(r['slip']):>11}{per_cent(r['poly']):>10}"
         f"{degrees(r['hottest']):>10}"

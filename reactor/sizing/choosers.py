@@ -51,6 +51,9 @@ def gaps(case, probe, result, options):
 
     For the lamp of the case and two common kinds.
     """
+    if case.vessel.kind != "plug flow":
+        said = ["gaps are compared in plug flow, where one sleeve stands in one shell"]
+        return {"title": "which gap", "slip": probe["chlorine_slip"], "rows": [], "remarks": said}
     own = case.lamp[0].kind if case.lamp else None
     wanted = dict.fromkeys(k for k in (own, "LED 365 nm", "medium-pressure mercury") if k)
     rows = []

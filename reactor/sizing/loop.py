@@ -238,7 +238,7 @@ def record(probe):
         "recycle": one.recycle,
         "reactor inlet": one.inlet,
         "reactor outlet": one.outlet,
-        "to separation of products": one.product,
+        "products, HCl, slip": one.product,
         "purge": one.purged,
     }
     inert = [i for i, s in enumerate(gas.species) if s in ("N2", "Ar", "CO2", "O2") and one.inlet[i] > 0]

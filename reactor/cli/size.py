@@ -1,10 +1,10 @@
 """The command `size`: targets in, equipment out."""
 
 import sys
-from pathlib import Path
 
 import click
 
+from reactor.cli.common import OVERRIDE, STRICT, emphasis, show, write
 from reactor.errors import CaseError
 
 WORDS = "light tubes loads trade stages kinds lamps gaps turndown ageing"
@@ -48,27 +48,23 @@ WORDS = "light tubes loads trade stages kinds lamps gaps turndown ageing"
     show_default=True,
     help="With stages: mole fraction of chlorine right after an injection.",
 )
-@click.option(
-    "--cool-to", metavar="TEMPERATURE", help="With stages: temperature of the gas before each injection."
-)
-@click.option(
-    "--life", metavar="TIME", help='With ageing: hours until the lamp is at end_of_life, like "8000 h".'
-)
+@click.option("--cool-to", metavar="TEMPERATURE", help="With stages: temperature of the gas before each "
+                                                       "injection.")
+@click.option("--life", metavar="TIME", help='With ageing: hours until the lamp is at end_of_life, like '
+                                             '"8000 h".')
 @click.option("--deposit", metavar="SHARE", help='With ageing: light lost to deposit in a week, like "2 %".')
-@click.option("--write", metavar="FILE", help="Write the sized case as a new case file.")
-@click.option(
-    "--set", "overrides", metavar="KEY=VALUE", multiple=True, help="Override one entry of the case first."
-)
-@click.option("--strict", is_flag=True, help="Refuse every default that the case file does not state.")
-@click.option(
-    "--json", "as_json", is_flag=True, help="Print the rated result with its block `sizing` as JSON."
-)
+@click.option("--write", "sized_file", metavar="FILE", help="Write the sized case as a new case file.")
+@OVERRIDE
+@STRICT
+@click.option("--json", "as_json", is_flag=True, help="Print the rated result with its block `sizing` "
+                                                      "as JSON.")
 @click.option("--save", metavar="FILE", help="Save the rated result with its block `sizing` as JSON.")
-def size(case, find, wanted, keeps, between, parts, overrides, strict, as_json, save, write, **more):
-    """Find inputs of a CASE for wanted results, and print what has to be built.
+def size(case, find, wanted, keeps, between, parts, overrides, strict, as_json, save, sized_file, **more):
+    """Find inputs for wanted results.
 
-    Without --for, [targets] of the case says what is wanted and [limits] what must hold. Exit code 1: no
-    solution within the range or the constraints; the nearest case is printed with what limits it.
+    Prints what has to be built of CASE. Without --for, [targets] of the case says what is wanted and [limits]
+    what must hold. Exit code 1: no solution within the range or the constraints; the nearest case is printed
+    with what limits it.
     """
     from reactor.case import load
     from reactor.report.sizing import render
@@ -90,10 +86,10 @@ def size(case, find, wanted, keeps, between, parts, overrides, strict, as_json, 
         click.echo(f"reactor: {error}", err=True)
         sys.exit(1)
     if save:
-        _write(save, result.to_json() + "\n")
-    if write:
-        _write(write, _sized(loaded, result))
-    click.echo(result.to_json() if as_json else render(result), nl=as_json)
+        write(save, result.to_json() + "\n")
+    if sized_file:
+        write(sized_file, _sized(loaded, result))
+    show(result.to_json() + "\n" if as_json else render(result, emphasis()), to_stderr="-" in (save, sized_file))
     sys.exit(0 if result.sizing["found"]["solved"] else 1)
 
 
@@ -151,14 +147,3 @@ def _sized(case, result):
     texts = [f"{key}={value}" for key, value in found["inputs"].items()]
     texts += [f"{key}={found['inputs']['vessel.length']}" for key in found["along"]]
     return dump(changed(case, texts))
-
-
-def _write(path, text):
-    """Write a file; - is standard output."""
-    if path == "-":
-        click.echo(text, nl=False)
-        return
-    try:
-        Path(path).write_text(text, encoding="utf-8", newline="")
-    except OSError as error:
-        raise CaseError(f"{path}: cannot be written ({error.strerror}); choose another place") from None
