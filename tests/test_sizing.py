@@ -473,3 +473,21 @@ def test_what_cannot_be_sized_ends_with_its_code_and_its_sentence(words, code, s
     found, out, err = command(str(TEN), *words)
     assert found == code
     assert said in " ".join((out + err).split())
+
+
+def test_an_input_that_does_not_act_is_named_as_the_reason():
+    found = sized(["meters.chlorine"], ["chlorine_slip=1 %"])
+    assert not found.record["solved"]
+    assert "does not depend" in found.record["limited_by"]
+
+
+@pytest.mark.parametrize("key", ["lamp.2.power", "inject.share", "recycle.purge"])
+def test_an_input_that_the_case_does_not_have_is_refused(key):
+    with pytest.raises(CaseError):
+        sized([key], ["chlorine_slip=1 %"])
+
+
+def test_an_input_that_is_nought_today_is_searched_on_a_straight_scale():
+    found = sized(["sleeve.deposit"], ["chlorine_slip=4 %"])
+    assert found.record["solved"]
+    assert 0.3 < found.case.sleeve.deposit < 0.5

@@ -209,7 +209,7 @@ def loop(one, emphasis):
     rows = [f"{'stream':<25}{'mol/s':>8}{'kg/h':>8}{'Nm3/h':>8}  largest shares, mol%"]
     for s in one["streams"]:
         top = sorted(s["composition"].items(), key=lambda item: -item[1])[:3]
-        shares = ", ".join(f"{species} {100 * n / max(s['moles'], 1e-300):.2g}" for species, n in top)
+        shares = ", ".join(f"{species} {_short(100 * n / max(s['moles'], 1e-300))}" for species, n in top)
         rows.append(
             f"{s['name']:<25}{figure(s['moles'], 3):>8}{figure(s['mass'], 3):>8}{figure(s['normal_volume'], 3):>8}  {shares}"
         )
@@ -228,6 +228,11 @@ def loop(one, emphasis):
         )
     )
     return section("RECYCLE", rows, emphasis)
+
+
+def _short(value):
+    """Return a number with two figures, whole from ten on."""
+    return f"{value:.0f}" if value >= 10 else f"{value:.2g}"
 
 
 def stages(one, emphasis):

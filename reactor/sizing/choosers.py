@@ -32,14 +32,9 @@ def lamps(case, probe, result, options):
     rows.sort(key=lambda row: (row["electrical"] is None, row["electrical"] or 0.0))
     best = rows[0]
     said = [
-        f"least mains power: {best['lamp']}; every kind with the factors of its own entry in the data, "
-        f"at its end of life"
+        f"least mains power: {best['lamp']}; every kind with the factors of its own entry in the data, at its end of life"
     ]
-    poor = [
-        row["lamp"]
-        for row in rows
-        if row["electrical"] is None or row["electrical"] > 10 * best["electrical"]
-    ]
+    poor = [row["lamp"] for row in rows if row["electrical"] is None or row["electrical"] > 10 * best["electrical"]]
     if poor:
         said.append(f"of no use here: {', '.join(poor)}")
     return {"title": "which lamp", "slip": probe["chlorine_slip"], "rows": rows, "remarks": said}

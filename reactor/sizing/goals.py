@@ -76,9 +76,7 @@ def check(wanted, keeps):
     for i, one in enumerate(goals):
         for two in goals[i + 1 :]:
             if one.name == two.name and _exclude(one, two):
-                raise Contradiction(
-                    f"{one} and {two} contradict each other: no equipment gives both; change one of them"
-                )
+                raise Contradiction(f"{one} and {two} contradict each other: no equipment gives both; change one of them")
 
 
 def _exclude(one, two):

@@ -21,10 +21,7 @@ POINTS = 13
 
 def at_flow(case, factor):
     """Return the case with every feed multiplied; lamps and coolant stay."""
-    feed = {
-        name: replace(one, moles={s: n * factor for s, n in one.moles.items()})
-        for name, one in case.feed.items()
-    }
+    feed = {name: replace(one, moles={s: n * factor for s, n in one.moles.items()}) for name, one in case.feed.items()}
     return replace(case, feed=feed)
 
 

@@ -16,9 +16,7 @@ VOLUMES = (0.5, 0.7, 1.4, 2.0, 4.0)  # of the design volume, for the trade
 
 def dimmed(case, factor):
     """Return the case with the mains power of every lamp multiplied."""
-    return cases.changed(
-        case, [f"lamp.{i}.power={lamp.power * factor:.10g} W" for i, lamp in enumerate(case.lamp, 1)]
-    )
+    return cases.changed(case, [f"lamp.{i}.power={lamp.power * factor:.10g} W" for i, lamp in enumerate(case.lamp, 1)])
 
 
 def of_fresh(case, share):
@@ -144,9 +142,7 @@ def stretched(case, factor):
             f"lamp.{i}.lit_from={lamp.lit_from * factor:.10g} m",
             f"lamp.{i}.lit_to={stop * factor:.10g} m",
         ]
-    texts += [
-        f"inject.{i}.position={inject.position * factor:.10g} m" for i, inject in enumerate(case.inject, 1)
-    ]
+    texts += [f"inject.{i}.position={inject.position * factor:.10g} m" for i, inject in enumerate(case.inject, 1)]
     return cases.changed(case, texts)
 
 

@@ -39,11 +39,9 @@ def loads(case, probe, result, options):
         "condenser": condenser(probe),
         "rules": cited(*names),
         "remarks": [
-            "the gas behind the absorber is wet: chlorine in it attacks steel and needs titanium, glass "
-            "or plastic",
+            "the gas behind the absorber is wet: chlorine in it attacks steel and needs titanium, glass or plastic",
             "the scrubber does not take alkanes or chlorides: its vent is still fuel",
-            "peak: full chlorine feed with the lamps off, reached at once; how long it lasts is the "
-            "valve's matter",
+            "peak: full chlorine feed with the lamps off, reached at once; how long it lasts is the valve's matter",
         ],
     }
 
@@ -150,9 +148,7 @@ def flash(moles, T, P, gas):
     heavy = np.isfinite(K) & (z > 0)
 
     def balance(vapour):
-        return float(
-            (z[heavy] * (K[heavy] - 1) / (1 + vapour * (K[heavy] - 1))).sum() + z[~heavy].sum() / vapour
-        )
+        return float((z[heavy] * (K[heavy] - 1) / (1 + vapour * (K[heavy] - 1))).sum() + z[~heavy].sum() / vapour)
 
     low, high = 1e-9, 1.0
     if (z[heavy] / K[heavy]).sum() <= 1.0:  # above the dew point: all vapour

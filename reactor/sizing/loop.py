@@ -18,9 +18,7 @@ from reactor.case.species import is_alkane
 from reactor.errors import CaseError, ConvergenceError
 from reactor.sizing.probe import Probe
 
-TOLERANCE = (
-    5e-9  # of the total flow: how well the torn stream returns to itself; the last of it goes to the products
-)
+TOLERANCE = 5e-9  # of the total flow: how well the torn stream returns to itself; the last of it goes to the products
 MOST = 40  # passes
 TRACE = 1e-30  # mol/s; less of a species is left out of the recycled stream
 MEMORY = 5  # passes that Anderson's rule looks back on
@@ -110,9 +108,7 @@ class _Pass:
         self.inlet = fresh + recycle + tear.others
         self.outlet = probe.profile.outlet.moles
         self.returned = tear.back * self.outlet
-        self.purged = (
-            tear.purge / max(1 - tear.purge, 1e-12) * recycle if tear.purge < 1 else tear.share * self.outlet
-        )
+        self.purged = tear.purge / max(1 - tear.purge, 1e-12) * recycle if tear.purge < 1 else tear.share * self.outlet
         self.product = self.outlet - recycle - self.purged
         self.gap = float(np.abs(self.returned - recycle).max() / self.inlet.sum())
         self.gas = gas
@@ -195,8 +191,7 @@ class _Tear:
         fresh = total / (self.fraction[self.alkane].sum() + slope[self.alkane].sum())
         if fresh <= 0:
             raise CaseError(
-                f"feed.{self.case.recycle.stream}.flow: more alkane returns than the reactor takes; "
-                f"raise the flow"
+                f"feed.{self.case.recycle.stream}.flow: more alkane returns than the reactor takes; raise the flow"
             )
         recycle = np.maximum(fixed + slope * fresh, 0.0)
         recycle[recycle < TRACE] = 0.0
@@ -207,9 +202,7 @@ class _Tear:
         case, species = self.case, self.gas.species
         feed = dict(case.feed)
         name = case.recycle.stream
-        feed[name] = replace(
-            feed[name], moles={s: float(n) for s, n in zip(species, fresh, strict=True) if n > 0}
-        )
+        feed[name] = replace(feed[name], moles={s: float(n) for s, n in zip(species, fresh, strict=True) if n > 0})
         back = {s: float(n) for s, n in zip(species, recycle, strict=True) if n > 0}
         if back:
             feed[loops.NAME] = Feed(name=loops.NAME, moles=back, temperature=case.recycle.temperature)
@@ -246,9 +239,7 @@ def record(probe):
     alkane = [i for i in range(len(gas.species)) if one.fresh[i] > 0 and _alkane(gas.species[i])]
     return {
         "streams": [_stream(name, moles, gas) for name, moles in streams.items()],
-        "closure": {
-            e: float(abs(out[i] - fed[i]) / fed[i]) for i, e in enumerate(gas.elements) if fed[i] > 0
-        },
+        "closure": {e: float(abs(out[i] - fed[i]) / fed[i]) for i, e in enumerate(gas.elements) if fed[i] > 0},
         "build_up": {
             gas.species[i]: {
                 "fresh": float((one.fresh + one.chlorine)[i] / (one.fresh + one.chlorine).sum()),

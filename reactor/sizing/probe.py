@@ -76,9 +76,7 @@ class Probe:
         if not isinstance(record, dict) or record["value"] is None:
             return record if isinstance(record, str) else None
         return float(
-            units.to_si(
-                record["value"], record["unit"].replace("1", "-") if record["unit"] == "1" else record["unit"]
-            )
+            units.to_si(record["value"], record["unit"].replace("1", "-") if record["unit"] == "1" else record["unit"])
         )
 
 

@@ -13,6 +13,7 @@ import numpy as np
 
 EXACT = 2e-7  # of the target; a found input gives the target back within this
 NARROW = 1e-9  # relative width of a bracket that cannot be narrowed further
+NO_WAY = "the result turns away from the target on both sides"
 STEPS = (
     0.4,
     1.2,
@@ -101,9 +102,7 @@ def _walk(f, start, low, high, most):
                 return None, "the trials allowed are used up; narrow the range with --between"
             new = min(max(x + direction * step, low), high)
             if new == x:
-                limits[direction] = (
-                    f"the end of the range, {'highest' if direction > 0 else 'lowest'} value allowed"
-                )
+                limits[direction] = f"the end of the range, {'highest' if direction > 0 else 'lowest'} value allowed"
                 break
             new, why = _open(f, x, new)
             if new is None:
@@ -123,6 +122,11 @@ def _walk(f, start, low, high, most):
             break  # it did come nearer that way: the other way leads off
         direction, ahead = -direction, slope
     best = f.best()[0]
+    if best == start:  # no way leads nearer
+        values = list(f.seen.values())
+        if len(values) > 1 and max(values) - min(values) <= 1e-7:
+            return None, "the target, which does not depend on this input"
+        return None, next((why for why in limits.values() if "end of the range" in why), NO_WAY)
     side = 1.0 if best > start else -1.0 if best < start else direction
     return None, limits.get(side) or next(iter(limits.values()), "the range is empty")
 
@@ -161,9 +165,7 @@ def _narrow(f, a, b, most):
         a, b = (b, new) if gap * f(b) < 0 else (a, new)
     x, gap = f.best()
     jump = (
-        "the result jumps across the target there"
-        if abs(b - a) <= 1e-6 * (1 + abs(b))
-        else "the trials allowed are used up"
+        "the result jumps across the target there" if abs(b - a) <= 1e-6 * (1 + abs(b)) else "the trials allowed are used up"
     )
     return Root(x, gap, abs(gap) <= EXACT, jump, f.trials)
 
@@ -176,8 +178,7 @@ def _guess(f, a, b, last):
     values = [f.seen[place] for place in near]
     if len(near) == 3 and len({round(v, 15) for v in values}) == 3:
         quadratic = sum(
-            p * math.prod(-values[j] / (values[i] - values[j]) for j in range(3) if j != i)
-            for i, p in enumerate(near)
+            p * math.prod(-values[j] / (values[i] - values[j]) for j in range(3) if j != i) for i, p in enumerate(near)
         )
         if min(a, b) < quadratic < max(a, b):
             x = quadratic
@@ -231,15 +232,11 @@ def several(trial, start, low, high, most=30):
             slope = slope + np.outer(new_gap - gap - slope @ change, change) / max(change @ change, 1e-300)
             x, gap, fresh = new, new_gap, False
     except Blocked as error:
-        best = min(
-            trials, key=lambda item: np.abs(item[1]).max(), default=(tuple(start), np.array([math.nan]))
-        )
+        best = min(trials, key=lambda item: np.abs(item[1]).max(), default=(tuple(start), np.array([math.nan])))
         return Root(best[0], best[1], False, str(error), trials)
     best, gap = min(trials, key=lambda item: np.abs(item[1]).max())
     at = [i for i in range(len(best)) if best[i] <= low[i] + 1e-9 or best[i] >= high[i] - 1e-9]
-    limit = (
-        f"the end of the range of unknown {at[0] + 1}" if at else "the targets pull against one another there"
-    )
+    limit = f"the end of the range of unknown {at[0] + 1}" if at else "the targets pull against one another there"
     return Root(best, gap, False, limit, trials)
 
 

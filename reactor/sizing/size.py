@@ -66,19 +66,12 @@ def size(case, find, wanted, keeps=(), between=None):
 def _count(find, wanted):
     """Check that there are as many unknowns as targets, all of them equalities."""
     if not find:
-        raise CaseError(
-            'nothing to find: name an input, like --find lamp.power, or write find = "lamp.power" in '
-            "[targets]"
-        )
+        raise CaseError('nothing to find: name an input, like --find lamp.power, or write find = "lamp.power" in [targets]')
     if not wanted:
-        raise CaseError(
-            'no target: add one, like --for "chlorine_slip=1 %", or write chlorine_slip = "1 %" in [targets]'
-        )
+        raise CaseError('no target: add one, like --for "chlorine_slip=1 %", or write chlorine_slip = "1 %" in [targets]')
     for goal in wanted:
         if goal.relation != "=":
-            raise CaseError(
-                f'--for "{goal}": a target is met exactly, write =; a bound belongs to --keep "{goal}"'
-            )
+            raise CaseError(f'--for "{goal}": a target is met exactly, write =; a bound belongs to --keep "{goal}"')
     if len(find) != len(wanted):
         raise CaseError(
             f"{len(find)} unknown ({', '.join(find)}) for {len(wanted)} target "
@@ -93,16 +86,16 @@ class Looker:
         self.case, self.unknowns, self.wanted, self.keeps = case, unknowns, wanted, keeps
         self.probes = {}
         self.warm = loop.Warm()
+        self.error = None
 
     def probe(self, x):
         """Return the probe at a place on the scale of the search."""
         if x not in self.probes:
             try:
-                changed = put(
-                    self.case, self.unknowns, [_from(u, v) for u, v in zip(self.unknowns, x, strict=True)]
-                )
+                changed = put(self.case, self.unknowns, [_from(u, v) for u, v in zip(self.unknowns, x, strict=True)])
                 self.probes[x] = loop.probe(changed, self.warm)
             except ReactorError as error:
+                self.error = error
                 raise search.Blocked(str(error).splitlines()[0].removeprefix("--set: ")) from None
         return self.probes[x]
 
@@ -164,6 +157,7 @@ def _whole(look, u):
             if fa * fb <= 0:
                 return _between(f, look, *sorted((a, b)))
             if abs(fb) > abs(fa):
+                limit = "the result turns away from the target" if a != n else limit
                 break
             a, fa = b, fb
     x = min(look.probes, key=lambda place: abs(look.gaps(place)[0]))
@@ -187,8 +181,10 @@ def _answer(case, look, root):
     """Return the `Sized` case and its record, constraints applied."""
     x = root.x if isinstance(root.x, tuple) else (root.x,)
     found, limit = root.found, root.limit
+    for number, u in enumerate(look.unknowns, 1):
+        limit = limit.replace(f"unknown {number}", u.key)
     if not look.probes:
-        raise ConvergenceError(f"the case cannot be solved where the search begins: {limit}")
+        raise look.error or ConvergenceError(f"the case cannot be solved where the search begins: {limit}")
     if x not in look.probes:
         x = min(look.probes, key=lambda place: max(map(abs, look.gaps(place))))
     broken = look.broken(x)
@@ -205,14 +201,11 @@ def _answer(case, look, root):
 def _nearest_kept(look, x, broken):
     """Return the place nearest to the target that breaks nothing, and the words for what limits it."""
     words = "; ".join(
-        f"{keep}: it is {goals.shown(keep.name, look.probe(x)[keep.name])} where the target is met"
-        for keep in broken
+        f"{keep}: it is {goals.shown(keep.name, look.probe(x)[keep.name])} where the target is met" for keep in broken
     )
     kept = [place for place in look.probes if not look.broken(place)]
     for u in look.unknowns[:1] if not kept and len(look.unknowns) == 1 and not look.unknowns[0].whole else ():
-        kept = [
-            end for end in ((_to(u, u.low),), (_to(u, u.high),)) if _tried(look, end) and not look.broken(end)
-        ]
+        kept = [end for end in ((_to(u, u.low),), (_to(u, u.high),)) if _tried(look, end) and not look.broken(end)]
     if not kept:
         return x, f"{words}; no case that was tried keeps it"
     best = min(kept, key=lambda place: max(map(abs, look.gaps(place))))

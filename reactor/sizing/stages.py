@@ -174,11 +174,7 @@ def product(probe, given):
     """Return the organics formed over the whole train, net of what is fed, {species: kg/h}, largest first."""
     gas = probe.gas
     made = (probe.profile.outlet.moles - given) * gas.molar_mass * 3600
-    found = {
-        s: float(m)
-        for s, m in zip(gas.species, made, strict=True)
-        if (m > 1e-3 and _is(is_organic, s)) or s == "CCl4"
-    }
+    found = {s: float(m) for s, m in zip(gas.species, made, strict=True) if (m > 1e-3 and _is(is_organic, s)) or s == "CCl4"}
     return dict(sorted(found.items(), key=lambda item: -item[1]))
 
 
@@ -206,10 +202,7 @@ def remarks(found, rows, options):
         )
     over = [row["stage"] for row in rows if row["chlorine_share"] > options.cap * 1.0001]
     if over:
-        said.append(
-            f"chlorine left over from the stage before lifts stage {', '.join(map(str, over[:6]))} "
-            f"above the cap"
-        )
+        said.append(f"chlorine left over from the stage before lifts stage {', '.join(map(str, over[:6]))} above the cap")
     wet = [row["stage"] for row in rows if row["dew_margin"] is not None and row["dew_margin"] < 10]
     if wet:
         said.append(f"stage {', '.join(map(str, wet[:6]))}: coldest wall less than 10 K above the dew point")

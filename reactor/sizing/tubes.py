@@ -73,11 +73,7 @@ def heat_to_remove(case, probe):
     """
     limit, gas, feed = case.limits.hottest, probe.gas, probe.feed
     capacity = float(feed.moles @ gas.heat_capacity((feed.temperature + limit) / 2))
-    released = (
-        probe.profile.total("heat_reaction")
-        + probe.profile.total("photon_power")
-        + probe.profile.total("lamp_heat")
-    )
+    released = probe.profile.total("heat_reaction") + probe.profile.total("photon_power") + probe.profile.total("lamp_heat")
     return released - capacity * (limit - feed.temperature), limit - (case.cooling.inlet or feed.temperature)
 
 
@@ -91,9 +87,7 @@ def by_heat(case, probe):
         return _count("heat", None, "limits.hottest is not stated", asked=False)
     surplus, drive = heat_to_remove(case, probe)
     if surplus <= 0:
-        return _count(
-            "heat", 1, f"none: the gas itself takes the heat below {case.limits.hottest - 273.15:.0f} degC"
-        )
+        return _count("heat", 1, f"none: the gas itself takes the heat below {case.limits.hottest - 273.15:.0f} degC")
     if case.cooling.mode == "none" or drive <= 0:
         return _count("heat", None, f"{surplus / 1e3:.3g} kW would have to go and there is no cooling")
     need, last = surplus / drive, 0.0
@@ -138,9 +132,7 @@ def by_flow(case, probe):
         now = probe["pressure_drop"]
         by_drop = max(1, math.ceil(case.vessel.parallel * (now / drop) ** (1 / 1.8) - 1e-9))
         if by_drop > count:
-            return _count(
-                "pressure drop", by_drop, f"{now / 100:.3g} mbar now, {drop / 100:.3g} mbar at most"
-            )
+            return _count("pressure drop", by_drop, f"{now / 100:.3g} mbar now, {drop / 100:.3g} mbar at most")
         why += f"; {now / 100:.3g} mbar of {drop / 100:.3g} mbar"
     return _count("velocity", count, why)
 
@@ -162,9 +154,7 @@ def by_light(case, probe):
         return _count("light", None, "no lamp", asked=False)
     limit = skin_limit(case, probe)
     total = probe["light_electrical"]
-    hottest = float(
-        probe.profile.temperature[probe.profile.photolysis > 0].max(initial=probe.feed.temperature)
-    )
+    hottest = float(probe.profile.temperature[probe.profile.photolysis > 0].max(initial=probe.feed.temperature))
 
     def skin(n):
         share = case.vessel.parallel / n
@@ -180,8 +170,7 @@ def by_light(case, probe):
         return _count(
             "light",
             None,
-            f"the gas itself ({hottest - 273.15:.0f} degC) is above the skin limit of "
-            f"{limit - 273.15:.0f} degC",
+            f"the gas itself ({hottest - 273.15:.0f} degC) is above the skin limit of {limit - 273.15:.0f} degC",
         )
     for n in _numbers():
         try:

@@ -53,9 +53,7 @@ class Unknown:
 
 def put(case, unknowns, values):
     """Return the case with every unknown at its value [SI]."""
-    return cases.changed(
-        case, [text for u, v in zip(unknowns, values, strict=True) for text in u.overrides(v)]
-    )
+    return cases.changed(case, [text for u, v in zip(unknowns, values, strict=True) for text in u.overrides(v)])
 
 
 def unknown(case, key, between=None):
@@ -86,12 +84,13 @@ def unknown(case, key, between=None):
         return Unknown(key, "-", start or low, low, high, True, True)
     unit = _unit(typed, kind)
     low, high = kind.least, kind.most
-    positive = (start or high) > 0 and low >= 0 and kind.si != "K"
-    if positive and start:
-        low, high = max(low, start / REACH), min(high, start * REACH)
+    positive = low >= 0 and kind.si != "K" and (start is None or start > 0)
+    if positive:
+        low, high = max(low, (start or high / REACH) / REACH), min(high, (start or high) * REACH)
     low, high = _range(kind, between, low, high)
+    positive = positive and low > 0
     if start is None or not low <= start <= high:
-        start = (max(low, high / REACH) * high) ** 0.5 if positive else (low + high) / 2
+        start = (low * high) ** 0.5 if positive else (low + high) / 2
     return Unknown(key, unit, start, low, high, positive, False, _along(case, key))
 
 
@@ -126,17 +125,16 @@ def _kind(case, key):
     else:
         cls = SINGLE.get(section) or MANY.get(section)
         if cls is None:
-            raise CaseError(
-                f"--find {key}: {nearest(section, (*SINGLE, *MANY, 'feed'))}; write it like {EXAMPLES}"
-            )
+            raise CaseError(f"--find {key}: {nearest(section, (*SINGLE, *MANY, 'feed'))}; write it like {EXAMPLES}")
         known = {item.name: item for item in fields(cls) if "kind" in item.metadata}
     if name not in known:
         raise CaseError(f"--find {key}: {nearest(name, known)}")
     kind = known[name].metadata["kind"]
     if not isinstance(kind, kinds.Kind | Count):
         raise CaseError(f"--find {key}: holds words, not a number; choose an input like {EXAMPLES}")
-    if section in MANY and not getattr(case, section):
-        raise CaseError(f"--find {key}: the case has no [[{section}]]")
+    entries = len(getattr(case, section)) if section in MANY else 1
+    if not entries or (section in MANY and rest[0].isdigit() and not 1 <= int(rest[0]) <= entries):
+        raise CaseError(f"--find {key}: the case has {entries} entries [[{section}]]")
     return kind
 
 
@@ -144,14 +142,10 @@ def _typed(case, key):
     """Return what the case says of a key; of several lamps the first."""
     section, *rest = key.split(".")
     if section in MANY and rest and not rest[0].isdigit():
-        found = [
-            case.typed.get(f"{section}.{i}.{rest[-1]}") for i in range(1, 1 + len(getattr(case, section)))
-        ]
+        found = [case.typed.get(f"{section}.{i}.{rest[-1]}") for i in range(1, 1 + len(getattr(case, section)))]
         values = {typed.si for typed in found if typed is not None}
         if len(values) > 1:
-            raise CaseError(
-                f"--find {key}: the entries differ; name one of them, like {section}.1.{rest[-1]}"
-            )
+            raise CaseError(f"--find {key}: the entries differ; name one of them, like {section}.1.{rest[-1]}")
         return found[0]
     return case.typed.get(key)
 
