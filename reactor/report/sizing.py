@@ -91,7 +91,7 @@ def light(one, emphasis):
     """Print lamp power against slip."""
     if not one["curve"]:
         return section("LAMP POWER AGAINST CHLORINE SLIP", [one["remark"]], emphasis)
-    rows = [f"{'slip':>12}{'mains kW':>12}{'into gas W':>12}{'absorbed W':>12}   decades of light a decade"]
+    rows = [f"{'slip':>12}{'mains kW':>12}{'into gas W':>12}{'absorbed W':>12}   decades of light per decade"]
     for row in one["curve"]:
         law = "" if row["law"] is None else f"{row['law']:.2f}"
         rows.append(

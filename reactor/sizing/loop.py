@@ -11,12 +11,12 @@ from dataclasses import replace
 
 import numpy as np
 
-from reactor import chemistry
 from reactor.case import loops
 from reactor.case.schema import Feed
 from reactor.case.species import is_alkane
 from reactor.errors import CaseError, ConvergenceError
-from reactor.sizing.probe import Probe
+from reactor.rating.plant import mechanism
+from reactor.sizing.probe import Probe, with_gas
 
 TOLERANCE = 5e-9  # of the total flow: how well the torn stream returns to itself; the last of it goes to the products
 MOST = 40  # passes
@@ -119,7 +119,7 @@ class _Tear:
 
     def __init__(self, case):
         self.case, self.purge = case, case.recycle.purge
-        self.gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+        self.gas = mechanism(case)
         index, K = self.gas.index, len(self.gas.species)
         self.share = np.array(
             [
@@ -206,7 +206,7 @@ class _Tear:
         back = {s: float(n) for s, n in zip(species, recycle, strict=True) if n > 0}
         if back:
             feed[loops.NAME] = Feed(name=loops.NAME, moles=back, temperature=case.recycle.temperature)
-        return replace(case, feed=feed)
+        return with_gas(replace(case, feed=feed), self.gas)
 
 
 def _alkane(key):

@@ -1,5 +1,6 @@
 """One look at a case: solved once, each result computed only when it is asked for, in SI."""
 
+from dataclasses import replace
 from functools import cached_property
 
 from reactor import chemistry, units
@@ -8,7 +9,7 @@ from reactor.models import SOLVERS
 from reactor.models.assemble import mixed_feed
 from reactor.models.plug_flow import solve_many
 from reactor.rating import figures, hazard
-from reactor.rating.plant import lamps, plant
+from reactor.rating.plant import lamps, mechanism, plant
 
 JUDGED = (
     "mtsr",
@@ -80,9 +81,16 @@ class Probe:
         )
 
 
+def with_gas(case, gas):
+    """Return the case bound to a mechanism that was made for it, where what it is fed with is changed afterwards."""
+    if case.chemistry.mechanism or gas.path == chemistry.mechanism().path:
+        return case
+    return replace(case, chemistry=replace(case.chemistry, mechanism=str(gas.path)))
+
+
 def plant_of(case):
     """Return the equipment of a case."""
-    gas = chemistry.mechanism(case.chemistry.mechanism and case.path(case.chemistry.mechanism))
+    gas = mechanism(case)
     return plant(case, gas, lamps(case))
 
 

@@ -17,7 +17,7 @@ from reactor.case.species import is_alkane, is_organic
 from reactor.errors import ReactorError
 from reactor.rating import hazard
 from reactor.rating.figures import chlorinated
-from reactor.sizing.probe import Probe
+from reactor.sizing.probe import Probe, with_gas
 
 MOST = 60
 
@@ -51,7 +51,7 @@ def stages(case, probe, result, options):
 
     And the price.
     """
-    case = probe.case  # with its recycle closed
+    case = with_gas(probe.case, probe.gas)  # with its recycle closed
     split = split_feed(case)
     if split is None or case.vessel.kind != "plug flow":
         return {
