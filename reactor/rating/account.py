@@ -14,7 +14,8 @@ def light_ledger(light, profile, case):
     if not len(light.wavelength):
         return ()
     absorbed, outer = per_line(light, profile)
-    found = photons.ledger(light, absorbed, outer, parallel=case.vessel.parallel)
+    tanks = case.vessel.tanks
+    found = photons.ledger(light, absorbed / tanks, outer / tanks, parallel=case.vessel.vessels)
     return tuple(
         {
             "name": r.name,
@@ -38,9 +39,9 @@ def per_line(light, profile):
     sigma = t[:, None] ** np.arange(light.sigma.shape[1]) @ light.sigma.T
     tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
     share = light.absorbed(np.log(tau))[0] * tau
-    if len(profile.z) == 1:
-        mean = share[0]
-        return mean * light.entering, (1 - mean) * light.entering
+    if profile.kind != "plug flow":  # one station a tank, each with its own lamps
+        absorbed = share.sum(axis=0) * light.entering
+        return absorbed, len(share) * light.entering - absorbed
     absorbed = np.zeros(len(light.wavelength))
     for entering, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
         inside = (profile.z >= start) & (profile.z <= stop)
