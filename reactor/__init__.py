@@ -18,10 +18,11 @@ def load(path, overrides=(), strict=False):
 
 
 def rate(case):
-    """Rate a checked case; see `reactor.rating.rate`."""
+    """Rate a checked case, its recycle closed first where it has one; see `reactor.rating.rate`."""
     from reactor.rating import rate as run
+    from reactor.sizing.loop import closed
 
-    return run(case)
+    return run(closed(case))
 
 
 def sweep(case, vary, **options):

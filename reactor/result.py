@@ -159,6 +159,8 @@ class Result:
         Hash of case, data and program; versions.
     profile : dict of str to list
         Columns along the tube, the unit in the name.
+    sizing : dict
+        What a sizing run found: the inputs, the targets, what binds, and its tables (see `reactor.sizing`).
     """
 
     title: str
@@ -178,6 +180,7 @@ class Result:
     numerics: dict = field(default_factory=dict)
     identity: dict = field(default_factory=dict)
     profile: dict = field(default_factory=dict)
+    sizing: dict = field(default_factory=dict)
 
     def __getitem__(self, name):
         """Return the plain value of a result: a float, or a dict of floats by species."""

@@ -5,8 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from reactor.case import load
-from reactor.rating import rate
+from reactor import load, rate
 
 CASES = Path(__file__).parent.parent / "cases"
 

@@ -164,7 +164,8 @@ WRONG = [
     (swapped('"36 mol/s"', '"0 mol/s"'),
      'case.toml:7: feed.alkane.flow: "0 mol/s": a flow is more than 0; write it like "100 kg/h"'),
     (swapped('"plug flow"', '"plugflow"'),
-     'case.toml:16: vessel.kind: "plugflow": did you mean "plug flow"? write "plug flow" or "stirred tank"'),
+     'case.toml:16: vessel.kind: "plugflow": did you mean "plug flow"? write "plug flow" or "stirred '
+     'tank" or "tanks in series"'),
     (swapped('"LED 365 nm"', '"LED 356 nm"'),
      "case.toml:23: lamp.1.kind: \"LED 356 nm\": unknown; "
      "did you mean 'LED 395 nm' or 'LED 385 nm' or 'LED 365 nm'?"),
@@ -219,7 +220,7 @@ WRONG = [
         "case.toml: vessel: this section is missing; write [vessel] and its keys",
     ]),
     (TEXT + '\n[targets]\nslip = "1 %"\n',
-     "case.toml:33: targets: not read by this version; take the section out"),
+     "case.toml:34: targets.slip: unknown; did you mean 'chlorine_slip' or 'chlorine_slip_mass'?"),
     (swapped('outside = "60 mm"', 'outside = "160 mm"'),
      "case.toml:27: sleeve.outside: 0.16 m does not fit into vessel.shell_inside, 0.154 m"),
     (with_line('thickness = "2.5 mm"', 'material = "fuzed silica"'),

@@ -162,10 +162,15 @@ def test_numbers_hang_together_as_they_are_defined(name, rated):
     assert sum(r["share_mass"].values()) == pytest.approx(1, abs=1e-9)
     poly = [s for s in r["share_mol"] if not re.fullmatch(r"([12]-)?C\d?H\d+Cl", s)]
     assert r["poly_share_mol"] == pytest.approx(sum(r["share_mol"][s] for s in poly), abs=1e-12)
-    # two Cl atoms a photon; thermal starts are far below one tenth in all shipped cases
-    assert r["thermal_start_share"] < 1e-3
-    assert r["quantum_yield"] == pytest.approx(2 * r["chain_length"], rel=2e-3)
-    assert 0.45 < r["light_order"] < 1.05
+    # two Cl atoms a photon; thermal starts are far below one tenth in all shipped cases but the one of all
+    # chlorine at once, where a count per photon would mean nothing and none is given
+    if name == "nightjar":
+        assert r["thermal_start_share"] > 0.1
+        assert r["quantum_yield"] is None
+    else:
+        assert r["thermal_start_share"] < 1e-3
+        assert r["quantum_yield"] == pytest.approx(2 * r["chain_length"], rel=2e-3)
+        assert 0.45 < r["light_order"] < 1.05
     assert r["light_absorbed"] < r["light_into_gas"] < r["light_radiant"] < r["light_electrical"]
     assert r["temperature_hottest"] >= r["temperature_outlet"] - 1e-9
     assert r["adiabatic_rise"] + r["temperature_inlet"] >= r["temperature_hottest"] - 3

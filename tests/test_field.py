@@ -220,14 +220,14 @@ def test_the_kernel_has_exact_slopes_of_uneven_light():
     from reactor import chemistry
     from reactor.kernel.plugflow import Balance
     from reactor.models import SOLVERS, assemble, pools
-    from reactor.models.plug_flow import _tube
+    from reactor.models.plug_flow import tube_of
     from reactor.rating.plant import lamps as lamps_of
     from reactor.rating.plant import plant
 
     case = reactor.load("cases/lapwing_ten_mercury.toml", overrides=["chemistry.radicals=local"])
     gas = chemistry.mechanism(None)
     settled, profile, _ = pools.settle(case, plant(case, gas, lamps_of(case)), SOLVERS["plug flow"])
-    tube = _tube(case, settled)
+    tube = tube_of(case, settled)
     inlet = assemble.mixed_inlet(case, gas)
     balance = Balance(tube, tube.sections[0], inlet.mass(gas) / 4)
     y = np.concatenate((profile.moles[40] / inlet.mass(gas), (420.0, 303.0, 1.5e5)))

@@ -12,8 +12,10 @@ from reactor.case.schema import (
     Lamp,
     Limits,
     Meters,
+    Recycle,
     Sleeve,
     Solver,
+    Targets,
     Vessel,
     Window,
 )
@@ -21,4 +23,5 @@ from reactor.case.templates import template
 from reactor.case.writer import dump
 
 __all__ = ["About", "Assumed", "Case", "Chemistry", "Cooling", "Feed", "Inject", "Lamp", "Limits", "Meters"]
-__all__ += ["Sleeve", "Solver", "Vessel", "Window", "changed", "dump", "load", "loads", "template"]
+__all__ += ["Recycle", "Sleeve", "Solver", "Targets", "Vessel", "Window"]
+__all__ += ["changed", "dump", "load", "loads", "template"]

@@ -7,7 +7,7 @@ from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
-from reactor.case import feeds, overrides, rules, schema, species
+from reactor.case import feeds, loops, overrides, rules, schema, species, targets
 from reactor.case.draft import Draft
 from reactor.case.places import lines
 from reactor.case.values import nearest
@@ -26,8 +26,8 @@ SINGLE = {
     "solver": schema.Solver,
 }
 MANY = {"lamp": schema.Lamp, "inject": schema.Inject}
-KNOWN = (*SINGLE, *MANY, "feed")
-LATER = ("recycle", "targets", "print", "signoff")
+KNOWN = (*SINGLE, *MANY, "feed", "targets", "recycle")
+LATER = ("print", "signoff")
 FEED_KEYS = ("flow", "ratio", "temperature")
 NO_COOLING = "no [cooling] section: no heat is taken out through the shell"
 
@@ -86,6 +86,8 @@ def build(tree, folder, changes, strict, name, places):
     feed = feeds.read(draft, parts["feed"])
     parts["limits"]["window"] = _windows(draft, tree.get("limits", {}))
     rules.apply(draft, parts, feed)
+    wanted = targets.read(draft, tree.get("targets", {}))
+    recycle = loops.read(draft, tree.get("recycle"), feed)
     _files(draft, parts, Path(folder))
     if strict:
         for key, value, why in draft.assumed:
@@ -98,6 +100,8 @@ def build(tree, folder, changes, strict, name, places):
         about=made.pop("case"),
         sleeve=schema.Sleeve(**parts["sleeve"]) if parts["sleeve"] is not None else None,
         feed=feed,
+        targets=wanted,
+        recycle=recycle,
         typed=draft.typed,
         assumed=tuple(draft.assumed),
         looked_up=tuple(draft.looked_up),

@@ -1,7 +1,7 @@
 """What keys must agree on with one another, and the defaults that follow from other sections."""
 
 from reactor.case import feeds
-from reactor.case.schema import GEOMETRIES
+from reactor.case.schema import GEOMETRIES, TANKS
 from reactor.case.values import Listed
 
 COOLANT = Listed("a cooling medium", "heat/coolants.csv", "medium")
@@ -27,7 +27,11 @@ def _vessel(draft, vessel):
     """Check the vessel against its kind."""
     if "kind" not in vessel:
         return
-    if vessel["kind"] == "stirred tank":
+    if vessel["kind"] == "tanks in series" and "vessel.tanks" not in draft.typed:
+        draft.fault("vessel.tanks", "missing; write how many, like tanks = 3; sizes are of each tank")
+    if vessel["kind"] != "tanks in series" and vessel.get("tanks", 1) != 1:
+        draft.fault("vessel.tanks", 'belongs to kind = "tanks in series"')
+    if vessel["kind"] in TANKS:
         if "stirring" in vessel and vessel["stirring"] is None:
             draft.fault("vessel.stirring", 'missing; a stirred tank needs it; write it like "300 rpm"')
         if vessel.get("geometry"):
@@ -62,7 +66,7 @@ LIKE = {"shell_inside": "154 mm", "axis_distance": "80 mm", "gap": "20 mm", "wid
 def _geometry(draft, vessel):
     """Check that the geometry has what it needs and nothing of another one."""
     word = vessel.get("geometry")
-    tank = vessel.get("kind") == "stirred tank"
+    tank = vessel.get("kind") in TANKS
     if "kind" not in vessel or (word is None and not tank):
         return
     name = word or "stirred tank"
@@ -116,7 +120,7 @@ def _sleeve(draft, parts, vessel):
         if (lamps or vessel.get("kind") == "plug flow") and "sleeve" not in parts["faulty"]:
             draft.fault("sleeve", "this section is missing; write [sleeve] and its keys")
         return
-    tank = vessel.get("kind") == "stirred tank"
+    tank = vessel.get("kind") in TANKS
     outer = vessel.get("geometry") not in (None, "annulus")
     if "outside" in sleeve and sleeve["outside"] is None and not outer:
         draft.fault("sleeve.outside", 'missing; write a length, like "60 mm"')
@@ -166,7 +170,7 @@ def _inject(draft, injects, feed, vessel):
     """Check the injectors and give them the temperature of the chlorine they share."""
     if not injects:
         return
-    if vessel.get("kind") == "stirred tank":
+    if vessel.get("kind") in TANKS:
         draft.fault("inject", "belongs to plug flow; a stirred tank takes all its feed at once")
     carriers = feeds.carriers(feed)
     if len(carriers) > 1:

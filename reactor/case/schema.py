@@ -39,6 +39,9 @@ def leave(kind, value=None):
     return field(default=value, metadata={"kind": kind})
 
 
+TANKS = ("stirred tank", "tanks in series")
+
+
 class Assumed(NamedTuple):
     """A default that was taken: its key, its value as text, and the reason."""
 
@@ -49,7 +52,7 @@ class Assumed(NamedTuple):
 
 def is_tank(values):
     """Tell whether the vessel is a stirred tank."""
-    return values.get("kind") == "stirred tank"
+    return values.get("kind") in TANKS
 
 
 def is_cooled(values):
@@ -116,7 +119,7 @@ class Inject:
 class Vessel:
     """[vessel]: the gas space."""
 
-    kind: str = need(Choice(("plug flow", "stirred tank")))
+    kind: str = need(Choice(("plug flow", *TANKS)))
     geometry: str | None = leave(Choice(GEOMETRIES))
     shell_inside: float | None = leave(kinds.LENGTH.within(2e-3, 20.0, "154 mm"))
     length: float = need(kinds.LENGTH.within(1e-2, 200.0, "3 m"))
@@ -153,6 +156,12 @@ class Vessel:
     gap: float | None = leave(kinds.LENGTH.within(1e-4, 2.0, "20 mm"))
     width: float | None = leave(kinds.LENGTH.within(1e-3, 20.0, "200 mm"))
     lit_sides: int = assume(Count(1, 2), 1, "a panel on one side", is_channel)
+    tanks: int = leave(Count(most=100), 1)
+
+    @property
+    def vessels(self):
+        """Return how many equal vessels there are, in parallel and in series."""
+        return self.parallel * self.tanks
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -249,6 +258,44 @@ class Limits:
 
 
 @dataclass(frozen=True, kw_only=True)
+class Targets:
+    """[targets]: what must come out, in SI by the name of the result, and which inputs may change for it."""
+
+    find: tuple[str, ...] = ()
+    wanted: dict[str, float] = field(default_factory=dict)
+
+
+@dataclass(frozen=True, kw_only=True)
+class RecycleForm:
+    """The typed keys of [recycle], beside its shares."""
+
+    purge: float = need(kinds.FRACTION.within(0.0, 1.0, '"2 %"'))
+    temperature: float = leave(kinds.TEMPERATURE)
+    share: float = assume(
+        kinds.FRACTION.within(0.0, 1.0, '"99 %"'), 0.0, "what is not listed leaves the loop"
+    )
+
+
+@dataclass(frozen=True, kw_only=True)
+class Recycle:
+    """
+    [recycle]: what goes back to the inlet: a share of each species that leaves, less the purge.
+
+    The flow of the alkane stream then is what enters the reactor; how much of it is fresh gas is found.
+    """
+
+    stream: str
+    purge: float
+    temperature: float
+    shares: dict[str, float]
+    share: float = 0.0
+
+    def of(self, species):
+        """Return the share of a species that the separation sends back [-]."""
+        return self.shares.get(species, self.share)
+
+
+@dataclass(frozen=True, kw_only=True)
 class Meters:
     """[meters]: errors of the two flow meters; left out, the corners are not assessed."""
 
@@ -307,6 +354,8 @@ class Case:
     meters: Meters = Meters()
     uncertainty: Uncertainty = Uncertainty()
     upsets: Upsets = Upsets()
+    targets: Targets = Targets()
+    recycle: Recycle | None = None
     solver: Solver = Solver()
     typed: dict[str, Any] = field(default_factory=dict)
     assumed: tuple[Assumed, ...] = ()
@@ -333,11 +382,19 @@ class Case:
         content = {part: _plain(getattr(self, part)) for part in parts}
         content["sleeve"] = self.sleeve and asdict(self.sleeve)
         content["feed"] = {name: asdict(feed) for name, feed in self.feed.items()}
+        for part in filter(self._states, ("targets", "recycle")):
+            content[part] = _plain(getattr(self, part))
         for key, digest in self.files.items():
             *where, last = key.split(".")
             holder = content[where[0]] if len(where) == 1 else content[where[0]][int(where[1]) - 1]
             holder[last] = digest
         return hashlib.sha256(json.dumps(content, sort_keys=True, default=str).encode()).hexdigest()
+
+    def _states(self, part):
+        """Tell whether the case says anything in one of its later sections."""
+        if part == "recycle":
+            return self.recycle is not None
+        return bool(self.targets.wanted or self.targets.find)
 
     def listing(self):
         """Return rows (key, typed text, SI text, "typed" | "assumed" | "data", why)."""

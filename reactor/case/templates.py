@@ -70,6 +70,19 @@ pressure_drop = "50 mbar"
 # uel = "70 vol%"
 # source = "name the report"
 
+# What `reactor size` looks for: results by name, and the inputs that it may change for them.
+# [targets]
+# find = "lamp.power"                   # or ["lamp.power", "vessel.length"] for two targets
+# chlorine_slip = "1 %"
+# products = { CH3Cl = "50 kg/h" }
+
+# What goes back to the inlet: shares of what leaves, less a purge. The flow of the alkane stream then is what
+# enters the reactor; how much of it is fresh gas is found.
+# [recycle]
+# purge = "1 %"
+# temperature = "40 degC"
+# shares = { CH4 = "99 %", N2 = "99 %" }
+
 # Errors of the two flow meters: without them the corners of the mixture are NOT ASSESSED.
 [meters]
 alkane = "3 %"

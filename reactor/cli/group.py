@@ -19,6 +19,7 @@ MODULES = {
     "check": "start",
     "rate": "rate",
     "photons": "photons",
+    "size": "size",
     "sweep": "study",
     "band": "maps",
     "window": "maps",

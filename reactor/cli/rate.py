@@ -18,11 +18,14 @@ from reactor.cli.common import FAIL_ON, OK, OVERRIDE, STRICT, VIOLATED, emphasis
 @click.option(
     "--profile", metavar="FILE", help="Write the profile along the tube as CSV, units in the header."
 )
+@click.option(
+    "--hand", "by_hand", is_flag=True, help="Print pocket-calculator estimates beside the full model."
+)
 @FAIL_ON
 @click.option(
     "--assert", "claims", metavar="CLAIM", multiple=True, help='Exit 1 where it breaks: "chlorine_slip<2 %".'
 )
-def rate(case, overrides, strict, as_json, save, profile, fail_on, claims):
+def rate(case, overrides, strict, as_json, save, profile, by_hand, fail_on, claims):
     """Rate the reactor of a case file.
 
     Prints conversion, products, light, heat, hazards and verdicts of CASE. With --save - or --profile - the
@@ -31,16 +34,24 @@ def rate(case, overrides, strict, as_json, save, profile, fail_on, claims):
     from reactor.case import load
     from reactor.rating import rate as run
     from reactor.report.terminal import render
+    from reactor.sizing.loop import closed
 
     broken_by = asserted(claims)
-    result = run(load(case, overrides, strict))
+    loaded = closed(load(case, overrides, strict))  # a recycle is closed first
+    result = run(loaded)
     if save:
         write(save, result.to_json() + "\n")
     if profile:
         from reactor.report.export import profile_csv
 
         write(profile, profile_csv(result))
-    show(result.to_json() + "\n" if as_json else render(result, emphasis()), to_stderr="-" in (save, profile))
+    page = result.to_json() + "\n" if as_json else render(result, emphasis())
+    if by_hand and not as_json:
+        from reactor.rating.hand import hand
+        from reactor.report.hand import render as box
+
+        page += box(hand(loaded, result), emphasis())
+    show(page, to_stderr="-" in (save, profile))
     broken = broken_by(result.results)
     show("".join(f"does not hold: {text}\n" for text in broken), to_stderr=True)
     sys.exit(exit_code(result, strict, fail_on) or (VIOLATED if broken else OK))

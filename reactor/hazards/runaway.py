@@ -9,11 +9,13 @@ criteria hardly ever strike; what strikes then is the rise itself.
 Screening values: one reaction, its order in chlorine taken as one, the gas otherwise as fed.
 """
 
+import math
+
 import numpy as np
 
 from reactor.hazards.exotherm import GAS_CONSTANT as R
 
-SEMENOV = 1 / np.e
+SEMENOV = 1 / math.e
 STAGNANT = {"slab": 0.878, "cylinder": 2.0, "sphere": 3.32}
 
 
@@ -150,7 +152,7 @@ def van_welsenaere_froment(S):
     if S <= 1:
         return 0.0
     root = (-1 + np.sqrt(1 + 4 * (S - 1))) / 2  # sqrt(N/e)
-    return float(np.e * root**2 / S)
+    return float(math.e * root**2 / S)
 
 
 def barkelew(S):
@@ -171,7 +173,7 @@ def barkelew(S):
     >>> print(f"{barkelew(50.0):.2f}")
     2.24
     """
-    return float(np.e - 3.37 / np.sqrt(S))
+    return float(math.e - 3.37 / np.sqrt(S))
 
 
 def hot_spot_limit(T, activation):

@@ -6,7 +6,7 @@ import numpy as np
 
 from reactor.errors import ConvergenceError
 from reactor.kernel.light import photolysis_rates
-from reactor.kernel.plugflow import TOTALS, Budget, Tube, integrate
+from reactor.kernel.plugflow import TOTALS, Budget, Job, Tube, integrate, integrate_many
 from reactor.kernel.rates import Rates
 from reactor.kernel.thermo import R
 from reactor.models import assemble
@@ -50,6 +50,38 @@ def solve(case, plant, look_further=True):
     else:
         path, remarks = run(case.cooling.inlet or inlet.temperature), ()
     return _profile(case, gas, tube, inlet, path, remarks)
+
+
+def solve_many(cases, plants):
+    """
+    Return a `Profile` for every case, or the reason in words why it was dropped, from one batch of the kernel.
+
+    Parameters
+    ----------
+    cases, plants : sequence
+        As in `solve`, one of each; coolant against the gas needs a search and is refused here. [-]
+    """
+    made = []
+    for case, plant in zip(cases, plants, strict=True):
+        if case.cooling.mode == "counter-current":
+            raise ValueError("coolant against the gas cannot be marched in one go; use solve")
+        tube, inlet = tube_of(case, plant), assemble.mixed_inlet(case, plant.gas)
+        flow, T = inlet.mass(plant.gas), inlet.temperature
+        job = Job(
+            tube,
+            inlet.moles / flow,
+            T,
+            case.cooling.inlet or T,
+            case.vessel.pressure,
+            flow / case.vessel.parallel,
+            assemble.budget(case),
+        )
+        made.append((tube, inlet, job))
+    paths = integrate_many([job for _, _, job in made], between=1)
+    return [
+        path if isinstance(path, str) else _profile(case, plant.gas, tube, inlet, path, ())
+        for case, plant, (tube, inlet, _), path in zip(cases, plants, made, paths, strict=True)
+    ]
 
 
 def tube_of(case, plant):

@@ -74,11 +74,11 @@ def curves(plant, profile):
     """Return the kernel's curve of J_eff/J for each section, with the light order found along the profile."""
     light = plant.light
     depth = depths(light, profile)
-    order = light_order(profile, plant.gas, plant.wall_loss, spaced(depth, profile.z, light.edges))
+    order = light_order(profile, plant.gas, plant.wall_loss, spaced(depth, profile, light.edges))
     sigma = sigma_at(light, WARM)[0]
     found = []
     for weight, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
-        here = np.isfinite(order) & ((len(order) == 1) | ((profile.z >= start) & (profile.z <= stop)))
+        here = np.isfinite(order) & beside(profile, start, stop)
         if not here.any():
             found.append(even.curve(light.cells, weight, sigma, 0.5))
             continue
@@ -88,11 +88,16 @@ def curves(plant, profile):
     return found
 
 
-def spaced(depth, z, edges):
+def beside(profile, start, stop):
+    """Return which stations lie in a section; those of tanks all do."""
+    return np.full(len(profile.z), profile.kind != "plug flow") | ((profile.z >= start) & (profile.z <= stop))
+
+
+def spaced(depth, profile, edges):
     """Return the numbers of few stations of each section, evenly spaced in ln of the optical thickness."""
     found = set()
     for start, stop in pairwise(edges):
-        here = np.flatnonzero((z >= start) & (z <= stop))
+        here = np.flatnonzero(beside(profile, start, stop))
         if len(here):
             rank = here[np.argsort(depth[here])]
             wanted = np.linspace(depth[rank[0]], depth[rank[-1]], STATIONS)
@@ -106,7 +111,7 @@ def change(plant, before, profile):
     pairs = zip(before, plant.even, plant.light.edges, plant.light.edges[1:], strict=False)
     gaps = [0.0]
     for old, new, start, stop in pairs:
-        here = (profile.z >= start) & (profile.z <= stop)
+        here = beside(profile, start, stop)
         gaps.append(float(np.abs(old(depth[here])[0] - new(depth[here])[0]).max(initial=0.0)))
     return max(gaps)
 

@@ -15,7 +15,7 @@ class Profile:
     Parameters
     ----------
     kind : str
-        "plug flow" or "stirred tank"; a tank has one station.
+        "plug flow", "stirred tank" or "tanks in series"; a tank has one station.
     species : tuple of str
         Names of the columns of `moles`.
     z : array (M,)

@@ -35,10 +35,10 @@ def solve(case, plant, look_further=True):
     feed = assemble.mixed_feed(case, gas)
     tank = tank_of(case, plant, feed)
     budget = assemble.budget(case)
-    low, high = _reach(tank, feed, gas)
+    low, high = reach(tank, feed, gas)
     states = steady_states(tank, low, high, budget)
-    number, remark = _reached(case, tank, states, feed, gas, budget)
-    return _profile(case, gas, tank, feed, states, number, remark)
+    number, remark = reached(case, tank, states, feed, gas, budget)
+    return profile_of(case, gas, tank, feed, states, number, remark)
 
 
 def tank_of(case, plant, feed):
@@ -53,7 +53,7 @@ def tank_of(case, plant, feed):
                 case.cooling.inlet or feed.temperature)
 
 
-def _reach(tank, feed, gas):
+def reach(tank, feed, gas):
     """Return temperatures below and above which no steady state can lie [K]."""
     low = min(feed.temperature, tank.coolant_inlet)
     chlorine = feed.moles[gas.index["Cl2"]]
@@ -63,7 +63,7 @@ def _reach(tank, feed, gas):
     return low - 1.0, max(feed.temperature, tank.coolant_inlet) + rise + 20.0
 
 
-def _reached(case, tank, states, feed, gas, budget):
+def reached(case, tank, states, feed, gas, budget):
     """Return the number of the steady state that the start leads to, and the sentence that says so."""
     stable = [i for i, state in enumerate(states) if state.stable]
     if len(states) == 1:
@@ -78,7 +78,8 @@ def _reached(case, tank, states, feed, gas, budget):
                      f"{states[nearest].T:.1f} K")
 
 
-def _profile(case, gas, tank, feed, states, number, remark):
+def profile_of(case, gas, tank, feed, states, number, remark):
+    """Return the tank in one of its steady states as a profile of one station."""
     tanks, state = case.vessel.parallel, states[number]
     flows = Balance(tank).flows(state.n, state.T)
     totals = {name: np.array([getattr(flows, name) * (1 if name == "time" else tanks)]) for name in TOTALS}

@@ -13,8 +13,8 @@ def light_ledger(light, profile, case):
     """Return the light account of all tubes as rows {name, part_of, power, photons}."""
     if not len(light.wavelength):
         return ()
-    absorbed, wall, ends = per_line(light, profile, case.vessel.parallel)
-    found = photons.ledger(light, absorbed, wall, ends, case.vessel.parallel)
+    absorbed, wall, ends = (each / case.vessel.tanks for each in per_line(light, profile, case.vessel.parallel))
+    found = photons.ledger(light, absorbed, wall, ends, case.vessel.vessels)
     return tuple(
         {
             "name": r.name,
@@ -28,7 +28,7 @@ def light_ledger(light, profile, case):
 
 def per_line(light, profile, parallel):
     """
-    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube, by line [mol/s].
+    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube (or chain of tanks), by line.
 
     The lines are those of the lamp, not the few that the model follows; what is absorbed is shared among them by
     their own cross-sections and adds up to the model's own total.
@@ -39,12 +39,13 @@ def per_line(light, profile, parallel):
     sigma = np.vander(t, spectrum.sigma.shape[1], increasing=True) @ spectrum.sigma.T
     tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
     entering = np.diff(light.edges) @ spectrum.into_gas
+    whole = entering * (1 if profile.kind == "plug flow" else len(profile.z))
     absorbed, ends = np.zeros((2, len(entering)))
     lots = zip(spectrum.into_gas, light.absorbed, light.ends, light.edges, light.edges[1:], strict=False)
     for flow, share, out, start, stop in lots:
-        if len(profile.z) == 1:
-            absorbed += flow * (stop - start) * share(np.log(tau[0]))[0] * tau[0]
-            ends += flow * (stop - start) * out(np.log(tau[0]))[0]
+        if profile.kind != "plug flow":  # one station a tank, each with its own lamps
+            absorbed += flow * (stop - start) * (share(np.log(tau))[0] * tau).sum(axis=0)
+            ends += flow * (stop - start) * out(np.log(tau))[0].sum(axis=0)
             continue
         inside = (profile.z >= start) & (profile.z <= stop)
         log_tau, z = np.log(tau[inside]), profile.z[inside]
@@ -53,9 +54,9 @@ def per_line(light, profile, parallel):
         ends += mean * np.trapezoid(here[:, None] * out(log_tau)[0], z, axis=0)
     total = profile.total("photons") / parallel
     if absorbed.sum() > 0 and total > 0:
-        absorbed = np.minimum(absorbed * total / absorbed.sum(), entering)
-    ends = np.minimum(ends, entering - absorbed)
-    return absorbed, entering - absorbed - ends, ends
+        absorbed = np.minimum(absorbed * total / absorbed.sum(), whole)
+    ends = np.minimum(ends, whole - absorbed)
+    return absorbed, whole - absorbed - ends, ends
 
 
 def streams(profile, gas):

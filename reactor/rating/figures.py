@@ -30,7 +30,7 @@ def headline(case, plant, profile, feed):
 def exchange(case, plant, profile):
     """Return U, transfer units and the sleeve's skin temperature at the hottest lit station."""
     wall, inlet = plant.wall, profile.inlet
-    UA = wall.overall * wall.perimeter * case.vessel.length * case.vessel.parallel
+    UA = wall.overall * wall.perimeter * case.vessel.length * case.vessel.vessels
     units = UA / (inlet.moles @ plant.gas.heat_capacity(inlet.temperature))
     lit = profile.photolysis > 0
     skin = None
@@ -160,8 +160,8 @@ def adiabatic_rise(profile, gas, feed):
 
 def light(case, plant, profile):
     """Return the light account in watts and photons, chain length, quantum yield and light order."""
-    gas, tubes = plant.gas, case.vessel.parallel
-    watts = {account.name: account.watts * tubes for account in plant.light.accounts}
+    gas, vessels = plant.gas, case.vessel.vessels
+    watts = {account.name: account.watts * vessels for account in plant.light.accounts}
     acid = gas.index["HCl"]
     made = profile.outlet.moles[acid] - profile.fed[acid]
     photons, thermal = profile.total("photons"), profile.total("thermal_starts")
@@ -200,10 +200,11 @@ def mean_order(profile, gas, wall_loss):
     """Return the light order averaged over the HCl formed where it is lit; None in the dark."""
     profile = spread(profile, gas)
     order = light_order(profile, gas, wall_loss)
-    if len(order) == 1:
-        return order[0]
-    made = np.diff(profile.moles[:, gas.index["HCl"]])
-    middle = (order[1:] + order[:-1]) / 2
+    acid = gas.index["HCl"]
+    if profile.kind == "plug flow":
+        made, middle = np.diff(profile.moles[:, acid]), (order[1:] + order[:-1]) / 2
+    else:
+        made, middle = np.diff(profile.moles[:, acid], prepend=profile.inlet.moles[acid]), order
     lit = np.isfinite(middle) & (made > 0)
     return float(np.average(middle[lit], weights=made[lit])) if lit.any() else None
 

@@ -197,7 +197,7 @@ def heat_removal(case, plant, profile, results):
             "all heat stays in the gas; the exotherm verdict judges it",
         )
     figure = f"{units:.2f} transfer units, U {U:.1f} W/m2/K, {plant.wall.regime} gas"
-    if profile.kind == "stirred tank":
+    if profile.kind != "plug flow":
         return Verdict(
             "heat removal",
             CAUTION if plant.wall.band[0] < 0.6 else PASS,

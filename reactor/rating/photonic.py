@@ -50,7 +50,8 @@ def photonic(case):
     results = figures.headline(case, equipment, profile, feed)
     inlet = profile.concentrations[0], float(profile.temperature[0])
     c = float(inlet[0][gas.index["Cl2"]])
-    absorbed, wall, ends = account.per_line(light, profile, case.vessel.parallel)
+    tanks = case.vessel.tanks
+    absorbed, wall, ends = (each / tanks for each in account.per_line(light, profile, case.vessel.parallel))
     return {
         "title": case.title,
         "geometry": geometry(light),
@@ -60,7 +61,7 @@ def photonic(case):
         "laws": bracket(case, light, c, inlet[1]),
         "lamps": other_lamps(case, light, c, inlet[1]),
         "ledger": account.light_ledger(light, profile, case),
-        "bands": by_band(light, absorbed, wall, ends, case.vessel.parallel),
+        "bands": by_band(light, absorbed, wall, ends, case.vessel.vessels),
         "merit": merit(case, profile, results, gas),
         "along": along(light, profile),
         "pools": pool_bracket(profile, mixed, gas),
@@ -167,7 +168,7 @@ def merit(case, profile, results, gas):
 
 def along(light, profile):
     """Return where along one tube the light enters and how fast chlorine is split."""
-    if len(profile.z) == 1:
+    if profile.kind != "plug flow":
         return {"z": [], "entering": [], "J": []}
     z = profile.z
     mean = light.entering.sum() / light.edges[-1]
@@ -203,7 +204,7 @@ def sheet(case, light, results):
              "arc": lamp.lit_to - lamp.lit_from, "from": lamp.lit_from, "to": lamp.lit_to,
              "end_of_life": lamp.end_of_life} for lamp in located(case)
         ],
-        "band": (float(low), float(high)), "vessels": case.vessel.parallel, "tubes": light.shape.tubes,
+        "band": (float(low), float(high)), "vessels": case.vessel.vessels, "tubes": light.shape.tubes,
         "photons": flow, "power_into_gas": watts["into gas"], "radiant": watts["radiant"],
         "mean_energy": watts["into gas"] / flow if flow > 0 else None,
         "wavelength": float(photon_energy(1.0) / (watts["into gas"] / flow)) if flow > 0 else None,

@@ -72,7 +72,7 @@ def shape(case):
     """Return the geometry of one tube or tank as the photon room wants it."""
     vessel, sleeve = case.vessel, sleeve_of(case)
     mirror = vessel.wall_reflectance
-    if vessel.kind == "stirred tank":
+    if vessel.kind != "plug flow":
         return photons.Immersed(sleeve.outside / 2, vessel.shell_inside / 2, sleeves(case), vessel.lamp_circle,
                                 sleeve.thickness, mirror)
     if vessel.geometry == "annulus":
@@ -92,7 +92,7 @@ def shape(case):
 
 def inner(case):
     """Return whether the lamps stand inside the gas, in a sleeve."""
-    return case.vessel.kind == "stirred tank" or case.vessel.geometry == "annulus"
+    return case.vessel.kind != "plug flow" or case.vessel.geometry == "annulus"
 
 
 def radii(case):

@@ -1,6 +1,7 @@
 """The whole calculation, read from the top."""
 
 from reactor import chemistry
+from reactor.case.loops import NAME as RECYCLE
 from reactor.models import SOLVERS, pools
 from reactor.models.assemble import mixed_feed
 from reactor.rating import account, figures, hazard, identity, judge, surroundings
@@ -42,7 +43,7 @@ def rate(case, factors=NOMINAL):
     results = bands(case, equipment, results) if factors == NOMINAL else results
     results |= figures.bracket(profile, mixed, gas)
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
-    gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.parallel)
+    gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.vessels)
     around = surroundings.assess(case, gas, profile)
     verdicts = (*judge.verdicts(case, equipment, profile, results, gaps, dangers), *around)
     return Result(
@@ -56,7 +57,7 @@ def rate(case, factors=NOMINAL):
         assumed=identity.assumed(case),
         deviations=identity.deviations(case),
         cautions=dangers.cautions,
-        remarks=(*profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
+        remarks=(*open_loop(case), *profile.remarks, *light.notes, *equipment.wall.notes, *gas.remarks,
                  *hazard.phosgene(profile, gas)),
         sources=identity.sources(equipment, dangers.cited),
         ledger=() if typed else account.light_ledger(light, profile, case),
@@ -64,6 +65,16 @@ def rate(case, factors=NOMINAL):
         numerics=profile.cost,
         identity=identity.identity(case, gas),
         profile=account.columns(profile, gas, dangers.classes),
+    )
+
+
+def open_loop(case):
+    """Say that a recycle is not closed, where the case has one and its stream is not among the feeds."""
+    if case.recycle is None or RECYCLE in case.feed:
+        return ()
+    return (
+        "the recycle is NOT closed here: the feeds are taken as typed, without the inerts and products that "
+        "come back",
     )
 
 
