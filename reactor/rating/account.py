@@ -28,7 +28,7 @@ def light_ledger(light, profile, case):
 
 def per_line(light, profile, parallel):
     """
-    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube (or chain of tanks), by line.
+    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube (or chain), by line.
 
     The lines are those of the lamp, not the few that the model follows; what is absorbed is shared among them by
     their own cross-sections and adds up to the model's own total.
