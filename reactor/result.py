@@ -70,6 +70,7 @@ NAMES = {  # every entry of `results`: its unit (or what it is), and its definit
     "chain_length": ("1", "HCl formed per Cl atom started, by light and by heat, gross"),
     "quantum_yield": ("1", "HCl formed per photon absorbed; none where thermal starts exceed one tenth"),
     "light_order": ("1", "d ln(HCl rate)/d ln J with molecules fixed, mean over the HCl formed in light"),
+    "mixed_pool": ("list", "with local radical pools: what one mixed pool would give, see POOL"),
     "thermal_start_share": ("1", "Cl atoms started by heat over all Cl atoms started, gross"),
     "class_inlet": ("word", "class of the mixed inlet: OUTSIDE (estimate), MARGIN, UNKNOWN or INSIDE"),
     "class_worst": ("word", "worst class of feeds, inlet, injectors and stations; UNKNOWN counts as INSIDE"),
@@ -91,6 +92,12 @@ MIXTURE = {  # every entry of `mixtures`
     "adiabatic_temperature": ("K", "when chlorine replaces hydrogen until one of them is used up"),
     "calculated_only": ("yes or no", "whether the range of a fuel is calculated, not measured"),
     "why": ("word", "what decides the class"),
+}
+POOL = {  # every entry of `mixed_pool`
+    "conversion_chlorine": ("1", "of all chlorine fed"),
+    "chlorine_slip": ("1", "chlorine that leaves over all chlorine fed"),
+    "temperature_hottest": ("K", "hottest gas"),
+    "photons_absorbed": ("mol/s", "photons that chlorine absorbs"),
 }
 STATE = {  # every entry of `steady_states`
     "temperature": ("K", "of the tank"),

@@ -371,6 +371,7 @@ def test_every_default_taken_is_listed_with_its_reason():
         "vessel.parallel": "1",
         "vessel.shell_wall": "not given",
         "vessel.shell_material": "not stated",
+        "vessel.wall_reflectance": "0",
         "lamp.1.number": "1",
         "lamp.1.lit_from": "0 m",
         "lamp.1.lit_to": "1.2 m",
@@ -411,6 +412,7 @@ def test_strict_reading_refuses_every_default_by_its_key():
 def test_strict_reading_accepts_a_case_that_says_everything():
     full = [
         "vessel.parallel=1", "vessel.shell_wall=3 mm", "vessel.shell_material=nickel 201", "lamp.1.number=1",
+        "vessel.wall_reflectance=0",
         "lamp.1.lit_from=0 m", "lamp.1.lit_to=1.2 m", "lamp.1.end_of_life=0.8",
         "sleeve.material=fused silica",
         "sleeve.deposit=0", "cooling.mode=none", "chemistry.radicals=mixed",

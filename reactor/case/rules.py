@@ -1,7 +1,7 @@
 """What keys must agree on with one another, and the defaults that follow from other sections."""
 
 from reactor.case import feeds
-from reactor.case.schema import TANKS
+from reactor.case.schema import GEOMETRIES, TANKS
 from reactor.case.values import Listed
 
 COOLANT = Listed("a cooling medium", "heat/coolants.csv", "medium")
@@ -12,6 +12,7 @@ def apply(draft, parts, feed):
     """Check a case across its sections and fill what depends on more than one of them."""
     vessel = parts.get("vessel", {})
     _vessel(draft, vessel)
+    _geometry(draft, vessel)
     for number, lamp in enumerate(parts["lamp"], start=1):
         _lamp(draft, lamp, f"lamp.{number}", vessel.get("length"))
     _sleeve(draft, parts, vessel)
@@ -37,10 +38,63 @@ def _vessel(draft, vessel):
             draft.fault("vessel.geometry", "belongs to plug flow; take it out of a stirred tank")
         return
     if "geometry" in vessel and vessel["geometry"] is None:
-        draft.fault("vessel.geometry", 'missing; write "annulus"')
+        words = ", ".join(f'"{word}"' for word in GEOMETRIES)
+        draft.fault("vessel.geometry", f"missing; write one of {words}")
     for name in ("stirring", "impeller", "start"):
         if f"vessel.{name}" in draft.typed:
             draft.fault(f"vessel.{name}", "belongs to a stirred tank; take it out of plug flow")
+
+
+NEEDED = {
+    None: ("shell_inside",),
+    "annulus": ("shell_inside",),
+    "tube beside lamp": ("shell_inside", "axis_distance"),
+    "tubes around lamp": ("shell_inside", "axis_distance", "ring"),
+    "lamps around tube": ("shell_inside", "axis_distance"),
+    "channel": ("gap", "width"),
+}
+BELONGS = {
+    "shell_inside": (None, *GEOMETRIES[:4]), "axis_distance": GEOMETRIES[1:4], "ring": ("tubes around lamp",),
+    "reflector": GEOMETRIES[1:4], "reflector_size": GEOMETRIES[1:4], "reflectance": GEOMETRIES[1:4],
+    "gap": ("channel",), "width": ("channel",), "lit_sides": ("channel",), "lamp_circle": (None,),
+    "lamp_passes": ("annulus",), "wall_reflectance": (None, "annulus", "channel"),
+}  # fmt: skip
+REFLECTORS = {"flat": ("tube beside lamp",), "elliptical": ("tube beside lamp",), "circular": GEOMETRIES[2:4]}
+LIKE = {"shell_inside": "154 mm", "axis_distance": "80 mm", "gap": "20 mm", "width": "200 mm", "ring": "6"}
+
+
+def _geometry(draft, vessel):
+    """Check that the geometry has what it needs and nothing of another one."""
+    word = vessel.get("geometry")
+    tank = vessel.get("kind") in TANKS
+    if "kind" not in vessel or (word is None and not tank):
+        return
+    name = word or "stirred tank"
+    for key in NEEDED[word]:
+        if key in vessel and vessel[key] is None:
+            mark = "" if key == "ring" else '"'
+            draft.fault(f"vessel.{key}", f"missing; {name} needs it; write it like {mark}{LIKE[key]}{mark}")
+    for key, words in BELONGS.items():
+        if word not in words and f"vessel.{key}" in draft.typed:
+            draft.fault(f"vessel.{key}", f"does not belong to {name}; take it out")
+    _reflector(draft, vessel, word)
+
+
+def _reflector(draft, vessel, word):
+    """Check a reflector: kind, size and reflectance."""
+    kind = vessel.get("reflector", "none")
+    if kind == "none":
+        return
+    if word not in REFLECTORS[kind]:
+        draft.fault("vessel.reflector", f'"{kind}" belongs to {", ".join(REFLECTORS[kind])}')
+    size, distance, bore = vessel.get("reflector_size"), vessel.get("axis_distance"), vessel.get("shell_inside")
+    if size is None:
+        what = {"flat": "lamp axis to mirror", "elliptical": "half of the long axis", "circular": "radius"}[kind]
+        draft.fault("vessel.reflector_size", f'missing; {what}; write it like "120 mm"')
+    elif distance and bore and kind != "flat" and size <= distance * (0.5 if kind == "elliptical" else 1.0) + bore / 2:
+        draft.fault("vessel.reflector_size", f"{size:g} m does not go round lamp and tube")
+    if vessel.get("reflectance") is None:
+        draft.fault("vessel.reflectance", 'missing; write the reflectance of the mirror, like "85 %"')
 
 
 def _lamp(draft, lamp, key, length):
@@ -67,11 +121,18 @@ def _sleeve(draft, parts, vessel):
             draft.fault("sleeve", "this section is missing; write [sleeve] and its keys")
         return
     tank = vessel.get("kind") in TANKS
+    outer = vessel.get("geometry") not in (None, "annulus")
+    if "outside" in sleeve and sleeve["outside"] is None and not outer:
+        draft.fault("sleeve.outside", 'missing; write a length, like "60 mm"')
+    if outer and "sleeve.outside" in draft.typed:
+        draft.fault("sleeve.outside", "the window is the wall of the gas space here; give its thickness only")
+    if (sleeve.get("film") is None) != (sleeve.get("film_thickness") is None):
+        draft.fault("sleeve.film", 'film and film_thickness belong together, like "evaporated carbon" and "0.02 um"')
     if "number" in sleeve and sleeve["number"] is None:
         total = sum(lamp.get("number") or 1 for lamp in lamps) or 1
         sleeve["number"] = draft.assume("sleeve.number", total, "one sleeve a lamp") if tank else 1
     elif sleeve.get("number", 1) != 1 and vessel.get("kind") == "plug flow":
-        draft.fault("sleeve.number", "an annulus has one sleeve; more of them belong to a stirred tank")
+        draft.fault("sleeve.number", "has one sleeve or window; more of them belong to a stirred tank")
     outside, thickness, inside = sleeve.get("outside"), sleeve.get("thickness"), vessel.get("shell_inside")
     if outside and thickness and 2 * thickness >= outside:
         draft.fault("sleeve.thickness", f"{thickness:g} m on each side fills the {outside:g} m outside")

@@ -60,6 +60,24 @@ def is_cooled(values):
     return values.get("mode", "none") != "none"
 
 
+GEOMETRIES = ("annulus", "tube beside lamp", "tubes around lamp", "lamps around tube", "channel")
+
+
+def is_outside(values):
+    """Tell whether the lamps stand outside the gas tubes."""
+    return values.get("geometry") in GEOMETRIES[1:4]
+
+
+def not_outside(values):
+    """Tell whether the gas has a wall opposite to the lamp."""
+    return not is_outside(values)
+
+
+def is_channel(values):
+    """Tell whether the gas space is a flat channel."""
+    return values.get("geometry") == "channel"
+
+
 @dataclass(frozen=True, kw_only=True)
 class About:
     """[case]: what the sheet says at its top."""
@@ -102,8 +120,8 @@ class Vessel:
     """[vessel]: the gas space."""
 
     kind: str = need(Choice(("plug flow", *TANKS)))
-    geometry: str | None = leave(Choice(("annulus",)))
-    shell_inside: float = need(kinds.LENGTH.within(2e-3, 20.0, "154 mm"))
+    geometry: str | None = leave(Choice(GEOMETRIES))
+    shell_inside: float | None = leave(kinds.LENGTH.within(2e-3, 20.0, "154 mm"))
     length: float = need(kinds.LENGTH.within(1e-2, 200.0, "3 m"))
     parallel: int = assume(Count(), 1, "one vessel, nothing in parallel")
     pressure: float = need(kinds.PRESSURE)
@@ -123,6 +141,21 @@ class Vessel:
         is_tank,
     )
     start: str = assume(Choice(("cold", "hot")), "cold", "the plant starts cold", is_tank)
+    wall_reflectance: float = assume(
+        kinds.FRACTION.within(0.0, 0.99, '"60 %"'), 0.0, "the wall opposite to the lamp is black", not_outside
+    )
+    lamp_passes: float = leave(kinds.FRACTION, 0.0)
+    lamp_circle: float | None = leave(kinds.LENGTH.within(1e-3, 20.0, "200 mm"))
+    axis_distance: float | None = leave(kinds.LENGTH.within(1e-3, 20.0, "80 mm"))
+    ring: int | None = leave(Count(2, 1000))
+    reflector: str = assume(
+        Choice(("none", "flat", "elliptical", "circular")), "none", "no reflector: light that misses is lost", is_outside
+    )
+    reflector_size: float | None = leave(kinds.LENGTH.within(1e-3, 20.0, "120 mm"))
+    reflectance: float | None = leave(kinds.FRACTION.within(0.0, 1.0, '"85 %"'))
+    gap: float | None = leave(kinds.LENGTH.within(1e-4, 2.0, "20 mm"))
+    width: float | None = leave(kinds.LENGTH.within(1e-3, 20.0, "200 mm"))
+    lit_sides: int = assume(Count(1, 2), 1, "a panel on one side", is_channel)
     tanks: int = leave(Count(most=100), 1)
 
     @property
@@ -149,22 +182,25 @@ class Lamp:
     )
     hot_junction: float | None = lookup(kinds.FRACTION.within(0.01, 1.0, '"90 %"'), "factor in the lamp data")
     emission: str | None = lookup(
-        Choice(("isotropic line", "sine-law line", "Lambertian cylinder", "radial")),
+        Choice(("isotropic line", "sine-law line", "Lambertian cylinder", "volumetric cylinder", "radial")),
         "emission law in the lamp data",
     )
+    radius: float | None = leave(kinds.LENGTH.within(1e-4, 0.5, "10 mm"))
 
 
 @dataclass(frozen=True, kw_only=True)
 class Sleeve:
     """[sleeve]: the tube between lamp and gas."""
 
-    outside: float = need(kinds.LENGTH.within(1e-3, 2.0, "60 mm"))
+    outside: float | None = leave(kinds.LENGTH.within(1e-3, 2.0, "60 mm"))
     thickness: float = need(kinds.LENGTH.within(1e-5, 0.1, "2.5 mm"))
     material: str = assume(Text(), "fused silica", "common practice for light below 400 nm")
     transmission: str | None = lookup(File(), "transmission of the material")
     deposit: float = assume(
         kinds.FRACTION.within(0.0, 0.999, '"10 %"'), 0.0, "share of light lost: clean sleeve"
     )
+    film: str | None = leave(Listed("a film", "photons/deposits.csv", "material"))
+    film_thickness: float | None = leave(kinds.LENGTH.within(1e-9, 1e-3, "0.02 um"))
     emissivity: float | None = lookup(kinds.FRACTION.within(0.01, 1.0, "0.9"), "emissivity of the sleeve")
     number: int | None = leave(Count())
 
@@ -196,7 +232,7 @@ class Chemistry:
         lambda values: values.get("wall_loss") is None,
     )
     photolysis_rate: float | None = leave(kinds.RATE.within(0.0, 1e4, "1e-3 1/s"))
-    radicals: str = assume(Choice(("mixed",)), "mixed", "radicals see the mean light of the cross-section")
+    radicals: str = assume(Choice(("mixed", "local")), "mixed", "radicals see the mean light of the cross-section")
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -50,12 +50,14 @@ $lit# end_of_life = "80 %"                # light left when the lamp is replaced
 outside = "60 mm"
 thickness = "2.5 mm"
 material = "fused silica"
-# deposit = "10 %"                    # light lost in a film on the sleeve
+# deposit = "10 %"                    # light lost in a film on the sleeve; or film = "evaporated carbon"
+#                                     # with film_thickness = "0.02 um"
 
 [cooling]
 $cooling
 [chemistry]
 wall_loss = "0.1 1/s"                 # chlorine atoms lost at the wall; or wall_sticking = 1e-4
+# radicals = "local"                  # each layer of gas has its own radicals; left out: one mixed pool
 
 # What the result is judged against. A limit that is left out is reported as NOT ASSESSED.
 [limits]
@@ -95,7 +97,8 @@ chlorine = "3 %"
 
 _TUBE = """\
 kind = "plug flow"
-geometry = "annulus"                  # gas between the sleeve and the shell
+geometry = "annulus"                  # gas between the sleeve and the shell; or "tube beside lamp",
+                                      # "tubes around lamp", "lamps around tube", "channel": see the README
 shell_inside = "$shell"
 length = "$length"
 parallel = $parallel"""

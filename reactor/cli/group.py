@@ -18,6 +18,7 @@ MODULES = {
     "new": "start",
     "check": "start",
     "rate": "rate",
+    "photons": "photons",
     "size": "size",
     "sweep": "study",
     "band": "maps",

@@ -10,7 +10,7 @@ import numpy as np
 
 from reactor.errors import ReactorError
 
-VERSION = 3  # FACE_VERSION of native/batch.h
+VERSION = 4  # FACE_VERSION of native/batch.h
 REASONS = (  # by status of native/batch.h; where, steps and seconds are filled in
     "",
     "the budget of {steps} steps was used up {where}; try a looser solver.rtol",

@@ -35,6 +35,18 @@ class _Whole(NamedTuple):
     heat: float = 0.0
 
 
+class Flat(NamedTuple):
+    """A curve that is one number everywhere."""
+
+    start: float
+    step: float
+    value: np.ndarray
+    slope: np.ndarray
+
+
+ONE = Flat(0.0, 1.0, np.ones(2), np.zeros(2))  # light that is even along the section, radicals in one mixed pool
+
+
 class Packed:
     """
     A batch of cases on one mechanism; the order of every tuple is that of native/batch.h.
@@ -100,7 +112,8 @@ class Packed:
             beam.fixed if fixed else 0.0, float(np.mean(beam.energy))))
         self.section_links.append((
             lines, degree, *map(self.as_is, (beam.entering, beam.energy, beam.sigma)),
-            self.curve(beam.absorbed), self.curve(beam.transmitted), int(fixed),
+            self.curve(beam.absorbed), self.curve(beam.transmitted), self.curve(beam.even or ONE),
+            self.curve(beam.along or ONE), int(beam.along is not None), int(fixed),
             self.put(injected[self.plan.species]) if injects else -1))
 
     def _rates(self, rates):

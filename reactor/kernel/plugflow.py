@@ -27,7 +27,7 @@ CHUNK = 256  # cases packed and solved in one call: enough to keep the lanes ful
 
 
 class Section(NamedTuple):
-    """A stretch of tube with constant light; `injected` [mol/s] at `heat` [W] enters at its start."""
+    """A stretch of tube under one beam; `injected` [mol/s] at `heat` [W] enters at its start."""
 
     start: float
     stop: float

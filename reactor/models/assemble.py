@@ -1,6 +1,7 @@
 """Turn a case and its rooms (gas, light, wall) into the plain records of the kernel."""
 
 import itertools
+from dataclasses import replace
 from typing import NamedTuple
 
 import numpy as np
@@ -19,7 +20,7 @@ class Plant(NamedTuple):
     What the rooms make of a case, for one tube or tank.
 
     `wall_loss` [1/s] takes chlorine atoms; `coolant` [W/K] is the heat capacity flow of the coolant (inf: its
-    temperature is constant).
+    temperature is constant). `even`: for local radical pools one curve a section, see `assemble.beams`.
     """
 
     gas: object
@@ -27,6 +28,7 @@ class Plant(NamedTuple):
     wall: object
     wall_loss: float
     coolant: float
+    even: list | None = None
 
 
 def streams(case, gas):
@@ -87,23 +89,32 @@ def mixed_feed(case, gas):
     return mix("mixed feed", everything, gas, case.vessel.pressure)
 
 
-def beams(light, fixed):
-    """Return one beam per section of constant light; a fixed J [1/s] acts where lamps are lit, else everywhere."""
+def beams(light, fixed, even=None):
+    """
+    Return one beam per section of constant light; a fixed J [1/s] acts where lamps are lit, else everywhere.
+
+    `even`: for local radical pools one curve a section, of the rate that counts over the mean rate.
+    """
     lamps = bool(np.any(light.into_gas))
+    if fixed is not None and lamps:  # then the light itself counts for nothing: no tails beyond the lit stretches
+        light = replace(light, into_gas=light.into_gas * light.lit[:, None], along=None)
     energy = light.photon_energy if lamps else np.array([PHOTON_365])
+    mean = light.entering / (light.edges[-1] - light.edges[0])
     return [
-        Beam(np.asarray(entering), energy, light.sigma, SIGMA_MIDDLE, SIGMA_HALF, light.path, light.area,
-             light.absorbed, light.transmitted, fixed if np.any(entering) or not lamps else None)
-        for entering in light.into_gas
+        Beam(np.asarray(entering if light.along is None else mean), energy, light.sigma, SIGMA_MIDDLE, SIGMA_HALF,
+             light.path, light.area, absorbed, transmitted, fixed if np.any(entering) or not lamps else None, ratio,
+             light.along)
+        for entering, absorbed, transmitted, ratio in zip(light.into_gas, light.absorbed, light.transmitted,
+                                                          even or [None] * len(light.absorbed), strict=True)
     ]
 
 
-def sections(case, gas, light):
+def sections(case, gas, light, even=None):
     """Return the kernel's sections of one tube: broken at lamp edges and injectors."""
     tubes = case.vessel.parallel
     stops = dict(injections(case, gas))
     edges = sorted({*(float(e) for e in light.edges), *stops, 0.0, case.vessel.length})
-    lit = beams(light, case.chemistry.photolysis_rate)
+    lit = beams(light, case.chemistry.photolysis_rate, even)
     none = np.zeros(len(gas.species))
     found = []
     for start, stop in itertools.pairwise(edges):

@@ -8,7 +8,7 @@ NEWTON = 40  # steps that bring the radicals to rest before their answer to ligh
 RECOMBINATION = 1e6  # m^3/mol/s; a low termination constant, so that the search starts from too many radicals
 
 
-def light_order(profile, gas, wall_loss):
+def light_order(profile, gas, wall_loss, stations=None):
     """
     Return d ln(HCl rate)/d ln J at every station (nan where it is dark).
 
@@ -22,6 +22,8 @@ def light_order(profile, gas, wall_loss):
         Chemistry.
     wall_loss : float
         Loss of chlorine atoms at the wall. [1/s]
+    stations : sequence of int
+        Stations looked at; the others are nan. None: all.
 
     Returns
     -------
@@ -30,9 +32,10 @@ def light_order(profile, gas, wall_loss):
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
     acid, radical = gas.index["HCl"], np.flatnonzero(gas.radical)
     order = np.full(len(profile.z), np.nan)
+    wanted = None if stations is None else set(stations)
     for i, (c, T, J) in enumerate(zip(profile.concentrations, profile.temperature, profile.photolysis, strict=True)):
         chlorine = c[gas.index["Cl2"]]
-        if J > 0 and chlorine > 0:
+        if (wanted is None or i in wanted) and J > 0 and chlorine > 0:
             plenty = np.sqrt(J * chlorine / RECOMBINATION)
             if c[radical].sum() < 1e-3 * plenty:  # none yet, as at an inlet: no end to the chain
                 c[radical] = plenty

@@ -91,7 +91,7 @@ def tube_of(case, plant):
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
     return Tube(rates, gas.molar_mass, plant.wall_loss, gas.index["Cl2"], gas.start, light.area,
                 wall.hydraulic_diameter, wall.friction, wall.conductance, wall.lamp_share, sign * plant.coolant,
-                assemble.sections(case, gas, light))
+                assemble.sections(case, gas, light, plant.even))
 
 
 def _against(run, entering, hot, look_further):
@@ -166,5 +166,5 @@ def _photolysis(tube, path, K):
     J = np.zeros(len(path.z))
     for place, section in enumerate(tube.sections):
         here = number == place
-        J[here] = photolysis_rates(section.beam, c[here], T[here])
+        J[here] = photolysis_rates(section.beam, c[here], T[here], path.z[here])
     return J

@@ -45,13 +45,11 @@ def tank_of(case, plant, feed):
     """Return the tank as the kernel wants it."""
     gas, light, wall, share = plant.gas, plant.light, plant.wall, 1.0 / case.vessel.parallel
     rates = Rates(gas.tables, gas.photolysis, gas.wall)
-    lengths = np.diff(light.edges) / case.vessel.length
-    lit = assemble.beams(light, case.chemistry.photolysis_rate)
-    beam = lit[0]._replace(entering=lengths @ np.array([beam.entering for beam in lit]),
-                           fixed=case.chemistry.photolysis_rate)
+    beam = assemble.beams(light, case.chemistry.photolysis_rate, plant.even)[0]
+    beam = beam._replace(fixed=case.chemistry.photolysis_rate)
     return Tank(rates, gas.molar_mass, plant.wall_loss, gas.index["Cl2"], gas.start, light.area * case.vessel.length,
                 case.vessel.length, case.vessel.pressure, feed.moles * share, feed.enthalpy(gas) * share, beam,
-                float(lengths @ light.sleeve_heat), wall.conductance, wall.lamp_share, plant.coolant,
+                float(light.sleeve_heat[0]), wall.conductance, wall.lamp_share, plant.coolant,
                 case.cooling.inlet or feed.temperature)
 
 

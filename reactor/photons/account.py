@@ -1,8 +1,13 @@
 """The photon ledger: where the mains watts and the photons of a reactor go, and how well each line closes."""
 
+from itertools import pairwise
 from typing import NamedTuple
 
 import numpy as np
+
+from reactor.photons.energy import photon_energy
+
+BANDS = (260, 300, 330, 350, 380, 400, 420, 450, 550)  # nm
 
 PARTS = {
     "mains": ("driver loss", "lamp heat", "lost to ageing", "radiant"),
@@ -40,11 +45,11 @@ def ledger(light, absorbed, outer_wall, ends=0.0, parallel=1):
     ----------
     light : Light
         The light of one tube. [-]
-    absorbed : array, shape (n,)
-        Photons absorbed by chlorine in one tube, by line, from the model. [mol/s]
-    outer_wall : array, shape (n,)
+    absorbed : array, shape (m,)
+        Photons absorbed by chlorine in one tube, by line of the lamps' spectrum, from the model. [mol/s]
+    outer_wall : array, shape (m,)
         Photons that reach the outer wall of one tube, by line, from the model. [mol/s]
-    ends : array, shape (n,), or 0
+    ends : array, shape (m,), or 0
         Photons that leave through the ends of one tube, by line. [mol/s]
     parallel : int
         Number of equal tubes. [-]
@@ -56,8 +61,8 @@ def ledger(light, absorbed, outer_wall, ends=0.0, parallel=1):
     """
     found = {account.name: (account.watts, account.photons) for account in light.accounts}
     for name, flow in (("absorbed", absorbed), ("outer wall", outer_wall), ("ends", ends)):
-        flow = np.broadcast_to(np.asarray(flow, float), light.wavelength.shape)
-        found[name] = (float(flow @ light.photon_energy), float(flow.sum()))
+        flow = np.broadcast_to(np.asarray(flow, float), light.spectrum.wavelength.shape)
+        found[name] = (float(flow @ photon_energy(light.spectrum.wavelength)), float(flow.sum()))
     whole_of = {part: whole for whole, parts in PARTS.items() for part in parts}
     order = ["mains", *PARTS["mains"], *PARTS["radiant"], *PARTS["into gas"]]
     rows = [Row(name, whole_of.get(name, ""), *(_times(x, parallel) for x in found[name])) for name in order]
@@ -77,3 +82,35 @@ def _miss(found, whole):
         if total:
             misses.append(abs(total - sum(found[part][place] for part in PARTS[whole])) / total)
     return max(misses, default=0.0)
+
+
+def by_band(light, absorbed, outer_wall, ends, parallel=1):
+    """
+    Return the photons of each spectral band on their way, all tubes together.
+
+    Parameters
+    ----------
+    light : Light
+        The light of one tube. [-]
+    absorbed, outer_wall, ends : array, shape (m,)
+        Photons by line of one tube, as for `ledger`. [mol/s]
+    parallel : int
+        Number of equal tubes. [-]
+
+    Returns
+    -------
+    rows : list of dict
+        band (first and last nm), at window, passed, into gas, absorbed, outer wall, ends [mol/s]; bands without light
+        are left out. [-]
+    """
+    s, nm = light.spectrum, light.spectrum.wavelength * 1e9
+    flows = {
+        "at window": s.at_window, "passed": s.at_window * s.passed, "into gas": np.diff(light.edges) @ s.into_gas,
+        "absorbed": absorbed, "outer wall": outer_wall, "ends": ends,
+    }  # fmt: skip
+    rows = []
+    for low, high in pairwise(BANDS):
+        here = (nm >= low * (1 - 1e-9)) & ((nm < high) | (high == BANDS[-1]))
+        if here.any() and s.at_window[here].sum() > 0:
+            rows.append({"band": (low, high)} | {n: float(f[here].sum()) * parallel for n, f in flows.items()})
+    return rows

@@ -3,10 +3,11 @@
 import numpy as np
 
 from reactor import library
-from reactor.photons import chlorine, field, windows
+from reactor.photons import chlorine, windows
+from reactor.photons.laws import EXTENDED, ISOTROPIC, RADIAL, SINE
 
 
-def cited(known, sleeve):
+def cited(known, sleeve, law, shape):
     """
     Return the numbers that the light of a tube rests on.
 
@@ -16,6 +17,10 @@ def cited(known, sleeve):
         The lamps of the tube. [-]
     sleeve : object
         The sleeve of the case. [-]
+    law : str
+        Law of emission. [-]
+    shape : Shape
+        The geometry. [-]
 
     Returns
     -------
@@ -27,8 +32,11 @@ def cited(known, sleeve):
     limits = (sheet[name].cited for name in ("extrapolation limit", "followed wavelength", "quantum yield"))
     wall = () if sleeve.transmission is not None else windows.range_of(sleeve.material)[2]
     lamps = (entry for each in known for entry in (*each.spectrum.cited, *each.cited))
-    radius = any(each.emission == field.LAMBERTIAN for each in known)
-    usual = (sheet["lamp radius over sleeve bore"].cited,) if radius else ()
+    name = "lamp radius over sleeve bore" if shape.immersed else "lamp radius"
+    usual = (sheet[name].cited,) if law in EXTENDED and not shape.panel and known else ()
+    if getattr(sleeve, "film", None):
+        table = library.table("photons/deposits.csv").where("material", sleeve.film)
+        usual += tuple(table.cited(f"film of {sleeve.film}"))
     return tuple(dict.fromkeys((*lamps, *usual, *wall, formula, *limits)))
 
 
@@ -42,8 +50,8 @@ def notes(lamps, known, sleeve, geometry, spectrum, length):
         The lamps as typed, and with their defaults. [-]
     sleeve : object
         The sleeve of the case. [-]
-    geometry : Field
-        Emission law and radii. [-]
+    geometry : tuple
+        Emission law, radius of the emitter [m], shape. [-]
     spectrum : tuple
         Lines [m], their radiant watts [W] and the bands they fall in. [-]
     length : float
@@ -56,24 +64,51 @@ def notes(lamps, known, sleeve, geometry, spectrum, length):
     """
     line, radiant, bands = spectrum
     total = radiant.sum() or 1.0
-    found = ["The lamp counts as infinitely long: no light is booked as leaving through the ends of the gas."]
+    law, radius, shape = geometry
+    found = []
     if share := radiant[bands["no data"]].sum() / total:
         found.append(f"{share:.1%} of the radiant watts lie below 260 nm: no data, counted as not absorbed.")
-    if geometry.law == field.LAMBERTIAN:
-        found.append(f"The lamp is taken as a Lambertian cylinder of {geometry.lamp * 1e3:.0f} mm radius.")
-    if geometry.law == field.RADIAL:
+    if law in EXTENDED and not shape.panel:
+        found.append(f"The lamp is taken as a {law} of {radius * 1e3:.0f} mm radius.")
+    if law == RADIAL and not shape.panel:
         found.append("The radial law is a lower bracket: it understates a thin gas by 21 to 36 %.")
+    if any(each.emission is None for each in lamps) and not shape.panel:
+        found.append(
+            f"The law of emission ({law}) is that of the class of lamp, not a measured one; between {ISOTROPIC} and "
+            f"{SINE} a thin gas behind no window absorbs up to 20 % less (the photon report shows it for this case)."
+        )
+    if any(known_one.spectrum.cited and entry.status == "memory" for known_one in known
+           for entry in known_one.spectrum.cited):  # fmt: skip
+        found.append("The lamp spectrum rests on memory: replace it by the maker's.")
+    found += _shape_notes(shape)
     found += [f"Lamp spectrum as typed in {each.spectrum}." for each in lamps if each.spectrum is not None]
     if any(each.kind == "own spectrum" for each in known):
         found.append(
             "Own spectrum without a kind: what is not typed (law, driver, ageing, heat) is as for an arc."
         )
-    if len(lamps) > 1 or any(each.number > 1 for each in lamps):
-        found.append("Several lamps in one sleeve count as one on the axis.")
+    if shape.name == "annulus" and (len(lamps) > 1 or any(each.number > 1 for each in lamps)):
+        found.append("Several lamps in one sleeve count as lying on its axis.")
     if any(each.lit_from < 0 or each.lit_to > length for each in lamps):
         found.append("A lamp reaches beyond the tube: that light is booked as never entering.")
     followed = bands["followed"]
     return (*found, *_wall_notes(sleeve, line[followed], radiant[followed], total))
+
+
+def _shape_notes(shape):
+    """Return what to say about the geometry."""
+    if shape.name == "annulus" and shape.reflectance > 0:
+        back = "is lost in the lamp" if shape.returning == 0 else f"passes the lamp by {shape.returning:.0%}"
+        return [f"The shell reflects {shape.reflectance:.0%} (specular); light that comes back to the sleeve {back}."]
+    if shape.name == "immersed lamps":
+        return ["The sleeves are black to one another; the wall of the vessel is specular."]
+    if shape.name == "channel":
+        return ["The channel counts as wide: light that grazes to its narrow sides is kept in it."]
+    if not shape.immersed:
+        bent = "Rays go straight through the tube wall (no refraction); lamps are black to light that comes back."
+        many = shape.tubes > 1 and shape.reflector
+        wide = " In a ring of tubes with a reflector keep the reflected part below 25 % (tymoschuk1993)."
+        return [bent + wide if many else bent]
+    return []
 
 
 def _wall_notes(sleeve, line, radiant, total):

@@ -13,9 +13,8 @@ def light_ledger(light, profile, case):
     """Return the light account of all tubes as rows {name, part_of, power, photons}."""
     if not len(light.wavelength):
         return ()
-    absorbed, outer = per_line(light, profile)
-    tanks = case.vessel.tanks
-    found = photons.ledger(light, absorbed / tanks, outer / tanks, parallel=case.vessel.vessels)
+    absorbed, wall, ends = (each / case.vessel.tanks for each in per_line(light, profile, case.vessel.parallel))
+    found = photons.ledger(light, absorbed, wall, ends, case.vessel.vessels)
     return tuple(
         {
             "name": r.name,
@@ -27,26 +26,37 @@ def light_ledger(light, profile, case):
     )
 
 
-def per_line(light, profile):
+def per_line(light, profile, parallel):
     """
-    Return photons absorbed and photons at the outer wall of one tube, by line [mol/s].
+    Return photons absorbed, at the outer wall (or lost in lamps) and through the ends of one tube (or chain), by line.
 
-    Both shares are integrated over the same stations, so that together they are what enters.
+    The lines are those of the lamp, not the few that the model follows; what is absorbed is shared among them by
+    their own cross-sections and adds up to the model's own total.
     """
-    chlorine = profile.species.index("Cl2")
+    spectrum, chlorine = light.spectrum, profile.species.index("Cl2")
     c, T = profile.concentrations[:, chlorine], profile.temperature
     t = np.clip((T - 550.0) / 350.0, -1.0, 1.0)
-    sigma = t[:, None] ** np.arange(light.sigma.shape[1]) @ light.sigma.T
+    sigma = np.vander(t, spectrum.sigma.shape[1], increasing=True) @ spectrum.sigma.T
     tau = np.maximum(sigma * AVOGADRO * c[:, None] * light.path, 1e-300)
-    share = light.absorbed(np.log(tau))[0] * tau
-    if profile.kind != "plug flow":  # one station a tank, each with its own lamps
-        absorbed = share.sum(axis=0) * light.entering
-        return absorbed, len(share) * light.entering - absorbed
-    absorbed = np.zeros(len(light.wavelength))
-    for entering, start, stop in zip(light.into_gas, light.edges, light.edges[1:], strict=False):
+    entering = np.diff(light.edges) @ spectrum.into_gas
+    whole = entering * (1 if profile.kind == "plug flow" else len(profile.z))
+    absorbed, ends = np.zeros((2, len(entering)))
+    lots = zip(spectrum.into_gas, light.absorbed, light.ends, light.edges, light.edges[1:], strict=False)
+    for flow, share, out, start, stop in lots:
+        if profile.kind != "plug flow":  # one station a tank, each with its own lamps
+            absorbed += flow * (stop - start) * (share(np.log(tau))[0] * tau).sum(axis=0)
+            ends += flow * (stop - start) * out(np.log(tau))[0].sum(axis=0)
+            continue
         inside = (profile.z >= start) & (profile.z <= stop)
-        absorbed += entering * np.trapezoid(share[inside], profile.z[inside], axis=0)
-    return absorbed, light.entering - absorbed
+        log_tau, z = np.log(tau[inside]), profile.z[inside]
+        here, mean = (np.ones(len(z)), flow) if light.along is None else (light.along(z)[0], entering / light.edges[-1])
+        absorbed += mean * np.trapezoid(here[:, None] * share(log_tau)[0] * tau[inside], z, axis=0)
+        ends += mean * np.trapezoid(here[:, None] * out(log_tau)[0], z, axis=0)
+    total = profile.total("photons") / parallel
+    if absorbed.sum() > 0 and total > 0:
+        absorbed = np.minimum(absorbed * total / absorbed.sum(), whole)
+    ends = np.minimum(ends, whole - absorbed)
+    return absorbed, whole - absorbed - ends, ends
 
 
 def streams(profile, gas):

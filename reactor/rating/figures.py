@@ -181,6 +181,21 @@ def light(case, plant, profile):
     }
 
 
+def bracket(profile, mixed, gas):
+    """Return, for local radical pools, what one fully mixed pool would give: the other end of the bracket."""
+    if mixed is None:
+        return {}
+    beside = conversion(mixed, gas)
+    return {
+        "mixed_pool": [{
+            "conversion_chlorine": beside["conversion_chlorine"],
+            "chlorine_slip": beside["chlorine_slip"],
+            "temperature_hottest": quantity(mixed.hottest[0], "K"),
+            "photons_absorbed": quantity(mixed.total("photons"), "mol/s"),
+        }]
+    }
+
+
 def mean_order(profile, gas, wall_loss):
     """Return the light order averaged over the HCl formed where it is lit; None in the dark."""
     profile = spread(profile, gas)

@@ -68,10 +68,7 @@ class _Desk:
         self.used = self.chlorine * (1 - self.slip)
         self.x = self.chlorine / self.total
         self.heats = ("CH4", "CH3Cl", "CH2Cl2", "CHCl3")
-        shell, sleeve = case.vessel.shell_inside, case.sleeve.outside if case.sleeve else 0.0
-        self.gap, self.hydraulic = (shell - sleeve) / 2, shell - sleeve
-        number = case.sleeve.number or 1 if case.sleeve else 1
-        self.area = math.pi / 4 * (shell**2 - number * sleeve**2)
+        self.gap, self.hydraulic, self.area = space(case)
         self.volume = self.area * case.vessel.length * case.vessel.vessels
         self.inlet = sum(sum(f.moles.values()) * f.temperature for f in case.feed.values()) / self.total
         self.rise = self.x * self.heat / self.capacity
@@ -285,3 +282,16 @@ def wall(d):
         "1",
         "turbulent gas; below 0.3 the tube is close to adiabatic",
     )
+
+
+def space(case):
+    """Return gap [m], hydraulic diameter [m] and cross-section [m2] of one gas space."""
+    vessel = case.vessel
+    if vessel.geometry == "channel":
+        return vessel.gap, 2 * vessel.gap * vessel.width / (vessel.gap + vessel.width), vessel.gap * vessel.width
+    shell = vessel.shell_inside
+    if vessel.geometry not in (None, "annulus"):
+        return shell, shell, math.pi / 4 * shell**2
+    sleeve = case.sleeve.outside if case.sleeve else 0.0
+    number = case.sleeve.number or 1 if case.sleeve else 1
+    return (shell - sleeve) / 2, shell - sleeve, math.pi / 4 * (shell**2 - number * sleeve**2)

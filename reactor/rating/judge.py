@@ -238,7 +238,7 @@ def light(case, plant, profile, results):
     share = absorbed / into if into > 0 else 0.0
     reasons = []
     even = evenness(plant, profile)
-    if even < UNEVEN:
+    if even < UNEVEN and case.chemistry.radicals != "local":
         reasons.append(
             "radicals mixed over the gap make a square-root chain look faster, at the inlet by a factor "
             f"{1 / np.sqrt(even):.2f}"

@@ -10,6 +10,7 @@ from reactor.chemistry import network
 from reactor.chemistry import wall as wall_chemistry
 from reactor.models.assemble import Plant, mixed_feed
 
+BODY = 0.01  # m, radius of a lamp outside the gas where it is not stated: an arc or phosphor tube of 20 mm
 MOST = 120  # species of a mechanism that is made unasked
 HOTTER = 150.0  # K; how much hotter than its feed a made mechanism is weighed where no limit is stated
 TURNDOWN = 0.2  # share of full flow at which the sleeve skin is asked for again: it may be hotter
@@ -64,9 +65,34 @@ def plant(case, gas, light, U_factor=1.0, flow=1.0):
 
 def lamps(case):
     """Return the light of one tube or tank."""
-    inside, outside = radii(case)
-    one = photons.light(located(case), sleeve_of(case), inside, outside, case.vessel.length)
-    return replace(one, area=one.area * sleeves(case))
+    return photons.light(located(case), sleeve_of(case), shape(case), case.vessel.length)
+
+
+def shape(case):
+    """Return the geometry of one tube or tank as the photon room wants it."""
+    vessel, sleeve = case.vessel, sleeve_of(case)
+    mirror = vessel.wall_reflectance
+    if vessel.kind != "plug flow":
+        return photons.Immersed(sleeve.outside / 2, vessel.shell_inside / 2, sleeves(case), vessel.lamp_circle,
+                                sleeve.thickness, mirror)
+    if vessel.geometry == "annulus":
+        return photons.Annulus(sleeve.outside / 2, vessel.shell_inside / 2, sleeve.thickness, mirror,
+                               vessel.lamp_passes)
+    if vessel.geometry == "channel":
+        return photons.Channel(vessel.gap, vessel.width, sleeve.thickness, vessel.lit_sides, mirror)
+    number = sum(lamp.number for lamp in case.lamp)
+    around = vessel.geometry == "lamps around tube"
+    return photons.Tubes(
+        vessel.shell_inside / 2, sleeve.thickness, vessel.axis_distance,
+        tubes=vessel.ring or 1 if vessel.geometry == "tubes around lamp" else 1, lamps=max(1, number) if around else 1,
+        reflector=None if vessel.reflector == "none" else vessel.reflector, size=vessel.reflector_size or 0.0,
+        reflectance=vessel.reflectance or 0.0, body=max((lamp.radius or BODY for lamp in case.lamp), default=BODY),
+    )
+
+
+def inner(case):
+    """Return whether the lamps stand inside the gas, in a sleeve."""
+    return case.vessel.kind != "plug flow" or case.vessel.geometry == "annulus"
 
 
 def radii(case):
@@ -127,25 +153,54 @@ def heat_exchange(case, gas, light, feed, flow=1.0):
         return found.viscosity, found.conductivity, found.heat_capacity_mass, found.density
 
     if case.vessel.kind == "plug flow":
-        per_tube = flow * feed.mass(gas) / case.vessel.parallel
-        exchange = heat.wall(
-            properties, per_tube, tube_shape(case), sides, lamp_heat, feed.temperature + 50.0
-        )
+        per_tube, alike = flow * feed.mass(gas) / case.vessel.parallel, equal_tubes(case)
+        exchange = heat.wall(properties, per_tube / alike, tube_shape(case), sides, lamp_heat, feed.temperature + 50.0)
+        exchange = several(exchange, alike, cooled(case))
     else:
         exchange = heat.tank_wall(properties, tank_shape(case), sides, lamp_heat, feed.temperature + 50.0)
     return exchange, coolant_capacity(case, medium)
 
 
 def tube_shape(case):
-    """Return the tube as the heat room wants it."""
-    return heat.Tube(
-        shell_inside=case.vessel.shell_inside,
-        length=case.vessel.length,
-        sleeve_outside=case.sleeve.outside,
-        thickness=case.vessel.shell_wall,
-        conductivity=shell_conductivity(case),
-        sleeve_emissivity=case.sleeve.emissivity,
-    )
+    """Return the tube as the heat room wants it; a channel is a bundle of tubes of its hydraulic diameter."""
+    if not inner(case):
+        return heat.Tube(shell_inside=hydraulic_diameter(case), length=case.vessel.length,
+                         thickness=case.vessel.shell_wall or case.sleeve.thickness, conductivity=shell_conductivity(case))
+    return heat.Tube(shell_inside=case.vessel.shell_inside, length=case.vessel.length,
+                     sleeve_outside=case.sleeve.outside, thickness=case.vessel.shell_wall,
+                     conductivity=shell_conductivity(case), sleeve_emissivity=case.sleeve.emissivity)
+
+
+def hydraulic_diameter(case):
+    """Return four times gas area over wetted perimeter of a tube without sleeve or of a channel [m]."""
+    if case.vessel.geometry != "channel":
+        return case.vessel.shell_inside
+    return 2 * case.vessel.gap * case.vessel.width / (case.vessel.gap + case.vessel.width)
+
+
+def equal_tubes(case):
+    """Return how many tubes of the hydraulic diameter have the area and the wetted perimeter of one gas space."""
+    if case.vessel.geometry != "channel":
+        return 1.0
+    return case.vessel.gap * case.vessel.width / (np.pi / 4 * hydraulic_diameter(case) ** 2)
+
+
+def cooled(case):
+    """Return the share of the wetted perimeter that is cooled: the windows of a channel are not."""
+    vessel = case.vessel
+    if vessel.geometry != "channel":
+        return 1.0
+    return 1 - vessel.lit_sides * vessel.width / (2 * (vessel.gap + vessel.width))
+
+
+def several(exchange, number, share):
+    """Return the `Wall` of `number` equal tubes side by side of which a share of the perimeter is cooled."""
+    if number == 1.0 and share == 1.0:
+        return exchange
+    more = scaled(exchange, number * share)
+    note = "channel: films of a tube of its hydraulic diameter; the lit faces take no heat"
+    return replace(more, overall=exchange.overall * share, perimeter=exchange.perimeter * number,
+                   notes=(*exchange.notes, note))
 
 
 def tank_shape(case):
@@ -193,14 +248,18 @@ def atom_loss(case, gas, feed):
         sticking = wall_chemistry.default_sticking().value
     if sticking == 0.0:
         return 0.0
-    inside, outside = radii(case)
     found = gas.transport(feed.temperature, case.vessel.pressure, feed.moles)
     speed = wall_chemistry.mean_speed(feed.temperature, gas.molar_mass[gas.index["Cl"]])
-    area_to_volume = 2 * (inside + outside) / (outside**2 - inside**2)
-    return wall_chemistry.wall_loss(
-        sticking,
-        speed,
-        found.diffusivity_chlorine_atom,
-        area_to_volume,
-        wall_chemistry.annulus_eigenvalue(inside, outside),
-    )
+    return wall_chemistry.wall_loss(sticking, speed, found.diffusivity_chlorine_atom, *to_the_wall(case))
+
+
+def to_the_wall(case):
+    """Return wetted wall over gas volume [1/m] and the smallest eigenvalue of diffusion to the wall [1/m2]."""
+    if case.vessel.geometry == "channel":
+        gap, width = case.vessel.gap, case.vessel.width
+        return 2 * (1 / gap + 1 / width), np.pi**2 * (1 / gap**2 + 1 / width**2)
+    if not inner(case):
+        radius = case.vessel.shell_inside / 2
+        return 2 / radius, wall_chemistry.tube_eigenvalue(radius)
+    inside, outside = radii(case)
+    return 2 * (inside + outside) / (outside**2 - inside**2), wall_chemistry.annulus_eigenvalue(inside, outside)

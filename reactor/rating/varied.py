@@ -57,7 +57,8 @@ def equipped(case, gas, factors=NOMINAL):
         feed={name: _moved(feed, factors) for name, feed in case.feed.items()},
     )
     light = lamps(case)
-    light = replace(light, sigma=light.sigma * factors.cross_section)
+    bins = light.spectrum._replace(sigma=light.spectrum.sigma * factors.cross_section)
+    light = replace(light, sigma=light.sigma * factors.cross_section, spectrum=bins)
     found = plant(case, gas, light, U_factor=factors.exchange)
     return case, found._replace(wall_loss=found.wall_loss * factors.wall_loss)
 

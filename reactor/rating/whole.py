@@ -2,7 +2,7 @@
 
 from reactor import chemistry
 from reactor.case.loops import NAME as RECYCLE
-from reactor.models import SOLVERS
+from reactor.models import SOLVERS, pools
 from reactor.models.assemble import mixed_feed
 from reactor.rating import account, figures, hazard, identity, judge, surroundings
 from reactor.rating.bands import bands
@@ -34,12 +34,14 @@ def rate(case, factors=NOMINAL):
     """
     gas = mechanism(case)
     case, equipment = equipped(case, gas, factors)
+    # chemistry, light and heat together; with local radical pools also the profile of one mixed pool
+    equipment, profile, mixed = pools.settle(case, equipment, SOLVERS[case.vessel.kind])
     gas, light = equipment.gas, equipment.light
-    profile = SOLVERS[case.vessel.kind](case, equipment)  # chemistry, light and heat together
     feed = mixed_feed(case, gas)
     dangers = hazard.assess(case, equipment, profile, feed)
     results = figures.headline(case, equipment, profile, feed) | dangers.results
     results = bands(case, equipment, results) if factors == NOMINAL else results
+    results |= figures.bracket(profile, mixed, gas)
     typed = case.chemistry.photolysis_rate is not None  # then the lamps' light is not what acts
     gaps = closures(profile, gas, 0.0 if typed else light.entering.sum() * case.vessel.vessels)
     around = surroundings.assess(case, gas, profile)

@@ -36,6 +36,9 @@ def light(result, emphasis):
         line("light order", in_unit(r["light_order"], "1"), "d ln(HCl rate)/d ln J"),
         line("share of thermal starts", percent(r["thermal_start_share"])),
     ]
+    if "mixed_pool" in r:
+        beside = f"slip {percent(r['mixed_pool'][0]['chlorine_slip'])}"
+        rows.append(line("radical pools", "local", f"one mixed pool would give {beside}"))
     return section("LIGHT", rows, emphasis)
 
 

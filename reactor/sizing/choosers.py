@@ -11,6 +11,7 @@ import numpy as np
 from reactor import case as cases
 from reactor.errors import ReactorError
 from reactor.photons.lamps import kinds as lamp_kinds
+from reactor.rating.hand import space
 from reactor.rating.judge import thickness
 from reactor.rating.plant import lamps as light_of
 from reactor.sizing.light import needed, stretched
@@ -46,7 +47,7 @@ def gaps(case, probe, result, options):
 
     For the lamp of the case and two common kinds.
     """
-    if case.vessel.kind != "plug flow":
+    if case.vessel.geometry != "annulus":
         said = ["gaps are compared in plug flow, where one sleeve stands in one shell"]
         return {"title": "which gap", "slip": probe["chlorine_slip"], "rows": [], "remarks": said}
     own = case.lamp[0].kind if case.lamp else None
@@ -97,7 +98,7 @@ def _row(case, kind, probe):
     """Return what one lamp in one gap needs for the slip of the probe."""
     if case is None:
         return None
-    gap = (case.vessel.shell_inside - case.sleeve.outside) / 2
+    gap = space(case)[0]
     try:
         start = _strength(probe.case) / max(_strength(case), 1e-300)
         found = needed(case, probe["chlorine_slip"], max(start, 1e-4), most=9)[1] if start < 1e4 else None

@@ -8,7 +8,7 @@ import copy
 
 from reactor.case.reader import build
 from reactor.case.schema import TANKS
-from reactor.errors import ReactorError
+from reactor.errors import CaseError, ReactorError
 from reactor.rating.plant import radii, sleeves
 from reactor.sizing import loop
 from reactor.sizing.data import practice
@@ -78,6 +78,8 @@ def _lamps(tree, case, share, length):
 
 def kinds(case, probe, result, options):
     """Return for every kind of vessel its slip and poly share, and the lamp power for the same slip."""
+    if case.vessel.geometry not in (None, "annulus"):
+        raise CaseError(f"--show kinds: compares an annulus with tanks; this case is a {case.vessel.geometry}")
     slip = probe["chlorine_slip"]
     rows: list[dict] = []
     for number in (*NUMBERS, None):

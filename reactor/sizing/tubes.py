@@ -21,8 +21,8 @@ GAS_CONSTANT = 8.31446261815324
 
 def tubes(case, probe, result, options):
     """Return the counts with the binding one named, and the tables of bores and of passes in series."""
-    if case.vessel.kind != "plug flow":
-        return {"counts": [], "binding": None, "remark": "counts of tubes belong to plug flow"}
+    if case.vessel.geometry != "annulus":
+        return {"counts": [], "binding": None, "remark": "counts of tubes belong to plug flow in an annulus"}
     counts = [
         by_volume(case, probe),
         by_heat(case, probe),

@@ -10,7 +10,8 @@ from reactor import library
 from reactor.photons import energy, field, lamps, windows
 from reactor.photons.bickley import bickley
 from reactor.photons.chlorine import cross_section
-from reactor.photons.field import ISOTROPIC, LAMBERTIAN, RADIAL, SINE, Field
+from reactor.photons.field import Field
+from reactor.photons.laws import ISOTROPIC, LAMBERTIAN, RADIAL, SINE
 
 approx = pytest.approx
 SHEET = "photons/cl2_cross_section.csv"
@@ -190,20 +191,6 @@ def test_fluence_rate_of_an_isotropic_line_in_absorbing_gas_is_as_tabulated(r, G
     # Source: Ki_1/(2 pi r), r1 30 mm, kappa 52.5 1/m, evaluated apart from this program (computed).
     # Kind: worked.
     assert field.fluence_rate(Field(ISOTROPIC, 0.03, 0.055), r, 52.5) == approx(G, rel=1e-5)
-
-
-@pytest.mark.parametrize(
-    ("ratio", "tau", "value"),
-    [
-        (1.5, 0.01, 0.998005), (1.5, 1.0, 0.962942), (1.5, 5.0, 0.729601), (3.0, 0.01, 0.988259),
-        (3.0, 1.0, 0.934723), (3.0, 5.0, 0.667701), (5.0, 0.01, 0.978543), (5.0, 1.0, 0.91405),
-        (5.0, 5.0, 0.627031),
-    ],
-)  # fmt: skip
-def test_unevenness_of_an_annulus_is_as_tabulated(ratio, tau, value):
-    # Source: <G^0.5>/<G>^0.5 over the annulus area, by quadrature apart from this program (computed).
-    # Kind: worked.
-    assert field.unevenness(Field(ISOTROPIC, 0.01, 0.01 * ratio), tau) == approx(value**2, rel=3e-6)
 
 
 @pytest.mark.parametrize(("emission", "value"), [(RADIAL, 0.9291), (ISOTROPIC, 0.8898), (SINE, 0.9126)])

@@ -20,7 +20,7 @@ from reactor.kernel import plugflow, tank
 from reactor.kernel.light import Beam
 from reactor.kernel.rates import Rates
 from reactor.models import SOLVERS
-from reactor.photons import field
+from reactor.photons import laws, rays, spread
 from reactor.rating import figures
 from reactor.rating.plant import lamps, plant
 
@@ -348,7 +348,9 @@ def test_a_photon_limited_tube_bleaches_by_its_closed_form(thickness):
 
 def test_an_opaque_tube_converts_a_molecule_a_photon_and_a_thin_one_half_pi_times_its_thickness():
     # Limit: round an isotropic line in a thin gas the mean path is pi/2 of the gap (1 - Ki_2(t) -> pi/2 t).
-    annulus = field.tables(field.Field(field.ISOTROPIC, 0.03, 0.05, 0.0))
+    found = rays.annulus(0.03, 0.05, laws.ISOTROPIC)
+    lots = spread.spread(found.after / 0.02, found.weight, found.ray, 1) @ spread.tilted(*laws.slopes(laws.ISOTROPIC))
+    annulus = [curves[0] for curves in spread.curves(lots, lots)]
     concentration = 0.2 * 1.2e5 / (8.31446261815324 * 350.0)
     for thickness, share in ((1e-4, np.pi / 2 * 1e-4), (1e3, 1.0)):
         sigma = thickness / (AVOGADRO * concentration * 0.02)

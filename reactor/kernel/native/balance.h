@@ -13,6 +13,7 @@ typedef struct {
     lane *feed, *A, *low_A;                                        /* mol/kg, and rate constants in their own unit */
     Curve conductance[LANES], share[LANES];
     Beam beam;
+    lane z; /* position at the start of the step [m] */
 } Case;
 
 /* What evaluate() found besides the slopes, for the matrix and the totals. */

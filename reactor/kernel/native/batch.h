@@ -10,12 +10,13 @@ enum { C_WALL_LOSS, C_AREA, C_DRAG, C_INVERSE_COOLANT, C_FLOW, C_T, C_TC, C_P, C
 enum { L_SECTION, L_SECTIONS, L_N, L_FEED, L_A, L_LOW_A, L_CONDUCTANCE, L_SHARE, L_STEPS, CASE_LINKS };
 enum { S_START, S_STOP, S_SLEEVE, S_HEAT, S_ADDED, S_PATH, S_AREA, S_MIDDLE, S_HALF, S_FIXED, S_MEAN_ENERGY,
        SECTION_REALS };
-enum { S_LINES, S_DEGREE, S_ENTERING, S_ENERGY, S_SIGMA, S_ABSORBED, S_TRANSMITTED, S_IS_FIXED, S_INJECTED,
+enum { S_LINES, S_DEGREE, S_ENTERING, S_ENERGY, S_SIGMA, S_ABSORBED, S_TRANSMITTED, S_EVEN, S_ALONG,
+       S_MOVES, S_IS_FIXED, S_INJECTED,
        SECTION_LINKS };
 enum { STATUS_DONE, STATUS_STEPS, STATUS_SECONDS, STATUS_STUCK, STATUS_NEGATIVE, STATUS_WRONG, STATUS_MIXING,
        STATUS_MEMORY, STATUS_PRESSURE };
 
-#define FACE_VERSION 3   /* changes with every change of this file or of plan.h */
+#define FACE_VERSION 4   /* changes with every change of this file or of plan.h */
 #define RESULT_REALS 7   /* z, T, P where it stopped; hottest T, its z; z of exhaustion or -1; last step */
 #define RESULT_COUNTS 4  /* status, steps, evaluations, stations kept */
 #define ROW_MORE 14      /* a station: z, flow, n..., T, Tc, P, totals */

@@ -18,6 +18,11 @@ typedef struct {
     mask is_fixed;
     lane *entering, *energy, *sigma; /* mol/m/s, J/mol, m2 as polynomial: (degree + 1) rows a line, highest last */
     Curve absorbed[LANES], transmitted[LANES];
+    Curve even[LANES]; /* J that counts for the radicals over J, by ln of the mean optical thickness */
+    Curve along[LANES]; /* what multiplies `entering`, by position [m] */
+    lane scale;        /* along[] at the position looked at */
+    lane whole;        /* photons of the section where along[] is 1 [mol/s] */
+    int moves;         /* whether any along[] is more than a constant */
 } Beam;
 
 /* J [1/s] and its derivatives by chlorine c and T; photons [mol/m/s], power [W/m] and what passes, likewise. */
@@ -60,7 +65,8 @@ static inline void add_line(const Beam *beam, int j, lane c, lane log_tau, lane 
     lane g, dg, t, dt;
     read_curves(beam->absorbed, log_tau, &g, &dg);
     read_curves(beam->transmitted, log_tau, &t, &dt);
-    lane thin = beam->entering[j] * AVOGADRO * beam->path / beam->area; /* J over sigma in thin gas */
+    lane entering = beam->entering[j] * beam->scale;
+    lane thin = entering * AVOGADRO * beam->path / beam->area; /* J over sigma in thin gas */
     lane rate = thin * sigma, both = g + dg, photons = rate * g * c * beam->area;
     lane by_c = rate * both * beam->area, by_T = thin * both * sigma_T;
     lane relative = sigma_T / larger(sigma, all(FEWEST));
@@ -68,8 +74,8 @@ static inline void add_line(const Beam *beam, int j, lane c, lane log_tau, lane 
     light->photons += photons, light->photons_c += by_c, light->photons_T += by_T * c * beam->area;
     light->power += photons * beam->energy[j], light->power_c += by_c * beam->energy[j];
     light->power_T += by_T * c * beam->area * beam->energy[j];
-    light->outer += beam->entering[j] * t, light->outer_c += beam->entering[j] * dt;
-    light->outer_T += beam->entering[j] * dt * relative;
+    light->outer += entering * t, light->outer_c += entering * dt;
+    light->outer_T += entering * dt * relative;
 }
 
 static void fix_light(const Beam *beam, lane c, Light *light)
@@ -84,6 +90,25 @@ static void fix_light(const Beam *beam, lane c, Light *light)
     light->power_c = pick(m, photons * beam->mean_energy, light->power_c);
     light->power_T = pick(m, none, light->power_T), light->outer = pick(m, none, light->outer);
     light->outer_c = pick(m, none, light->outer_c), light->outer_T = pick(m, none, light->outer_T);
+}
+
+/* Turn J and its slopes into those that count for radicals which stay where they arise. The mean optical thickness
+   is that of each line weighed by entering * sigma. */
+static void even_out(const Beam *beam, lane c, const Work *w, Light *light)
+{
+    lane first = all(0.0), second = all(0.0), first_T = all(0.0), second_T = all(0.0), ratio, slope;
+    for (int j = 0; j < beam->lines; j++) {
+        lane weight = beam->entering[j] * w->photon[0][j], by = beam->entering[j] * w->photon[1][j];
+        first += weight, first_T += by;
+        second += weight * w->photon[0][j], second_T += 2.0 * by * w->photon[0][j];
+    }
+    first = larger(first, all(FEWEST)), second = larger(second, all(FEWEST));
+    lane depth = larger(AVOGADRO * c * beam->path * (second / first), all(FEWEST));
+    lane log_depth = log_lane(depth);
+    read_curves(beam->even, log_depth, &ratio, &slope);
+    light->J_c = light->J_c * ratio + light->J * slope / larger(c, all(FEWEST));
+    light->J_T = light->J_T * ratio + light->J * slope * (second_T / second - first_T / first);
+    light->J *= ratio;
 }
 
 /* What chlorine at c [mol/m3] and T [K] makes of the light. */
@@ -104,6 +129,7 @@ static void absorb(const Beam *beam, lane c, lane T, Work *w, Light *light)
         add_line(beam, j, c, w->tau[j], w->photon[1][j], w->photon[0][j], light);
     lane by = larger(c, all(FEWEST));
     light->J_c = light->J_c / by, light->outer_c = light->outer_c / by;
+    even_out(beam, c, w, light);
     fix_light(beam, c, light);
 }
 

@@ -11,6 +11,7 @@
 #define BELOW_ZERO (-1e-14) /* mol/kg; a step that leaves less of a species is taken again, shorter */
 #define PROGRESS 1e-13     /* share of a section below which a step counts as stuck */
 #define THINNEST 1e-3      /* share of the inlet pressure below which friction has used it up */
+#define LIGHT 1e-6           /* error of a step that is let pass in the light that enters, of that of the section */
 #define GROWTH 10.0         /* the most by which a step may grow */
 
 /* Weighted error of lane l, nan or huge where the step went wrong; *below: a species went negative. */
@@ -28,7 +29,13 @@ static double error_of(const March *m, int l, int *below)
         sum += share * share;
         *below |= n < K && new < BELOW_ZERO;
     }
-    return root(sum / (K + BORDER - 1));
+    double error = root(sum / (K + BORDER - 1)), whole = SEEN(m->cs->beam.whole, l);
+    if (m->cs->beam.moves && !m->cs->tank && whole > 0.0) { /* what enters along the step is to be found too */
+        double light = SEEN(m->totals->k[5][0], l) + SEEN(m->totals->k[5][2], l);
+        light = (light < 0.0 ? -light : light) / (LIGHT * whole);
+        error = light > error ? light : error;
+    }
+    return error;
 }
 
 /* Bring T of the accepted lanes onto the enthalpy that light, lamp and wall have left in the gas. */
@@ -142,6 +149,7 @@ static void advance(March *m, double now)
         fresh |= !seat->again;
     }
     m->h = h;
+    EACH(l) AT(m->cs->z, l) = m->seat[l].job < 0 ? 0.0 : m->seat[l].z;
     if (fresh) prepare(m->p, m->cs, m->w, m->at, m->totals);
     take_step(m->p, m->cs, h, m->w, m->at, m->totals);
     EACH(l) {

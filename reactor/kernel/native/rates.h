@@ -14,7 +14,7 @@ typedef struct {
     lane *items, *jac, *q_S, *q_P, *q_T, *w_S, *w_P, *w_T, *slope; /* derivatives */
     lane *fall_ratio, *fall_log, *fall_power, *fall_slope;
     lane *matrix, *pivot;                                           /* elimination */
-    lane *y, *arg, *next, *stage[6], *rhs, *base_f, *base_h, *base_cp;
+    lane *y, *arg, *next, *stage[6], *rhs, *base_f, *by_z, *base_h, *base_cp;
     lane *tau, *photon[4];                                          /* light, line by line */
 } Work;
 

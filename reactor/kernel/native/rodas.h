@@ -23,6 +23,8 @@ static const double STAGE_C[5][5] = {
     {7.496443313967647, -10.24680431464352, -33.99990352819905, 11.70890893206160},
     {8.083246795921522, -7.981132988064893, -31.52159432874371, 16.31930543123136, -6.058818238834054},
 };
+static const double STAGE_Z[STAGES] = {0.0, 0.386, 0.21, 0.63, 1.0, 1.0}; /* where the stages stand in the step */
+static const double STAGE_BY_Z[STAGES] = {0.25, -0.1043, 0.1035, -0.0362, 0.0, 0.0}; /* weight of h df/dz */
 static const double DENSE[2][5] = {
     {10.12623508344586, -7.487995877610167, -34.80091861555747, -7.992771707568823, 1.025137723295662},
     {-0.6762803392801253, 6.087714651680015, 16.43084320892478, 24.76722511418386, -6.594389125716872},
@@ -34,6 +36,7 @@ typedef struct {
     lane by_M, by_T, along;     /* by the usual collider, by T, along the density */
     lane warmth;                /* sum cp f */
     lane rate[TOTALS], k[STAGES][TOTALS];
+    lane by_z[TOTALS];          /* their slopes by position where the light moves */
 } Totals;
 
 /* Row of the thermal starts: how 2 A sum q answers to concentrations and T. */
@@ -77,12 +80,33 @@ static void respond(const Plan *p, const Case *cs, const Found *at, const Work *
     out[8] = t->rate[8] * density;
 }
 
-/* Prepare a step from w->y: slopes, derivatives, and what the stages will need of this point. */
-static void prepare(const Plan *p, const Case *cs, Work *w, Found *at, Totals *t)
+/* Read the light at a position; leaves its slope by position. */
+static lane move_light(Case *cs, lane z)
 {
-    int K = p->species;
+    lane scale, slope;
+    read_curves(cs->beam.along, z, &scale, &slope);
+    mask lit = MASK(scale > 0.0);
+    cs->beam.scale = pick(lit, scale, all(0.0));
+    return pick(lit, slope, all(0.0));
+}
+
+/* Prepare a step from w->y: slopes, derivatives, and what the stages will need of this point. Where the light moves
+   along the section, also df/dz and that of the totals, from light of one unit more: both are linear in it. */
+static void prepare(const Plan *p, Case *cs, Work *w, Found *at, Totals *t)
+{
+    int K = p->species, moves = cs->beam.moves;
+    lane slope = all(0.0);
+    if (moves) {
+        slope = move_light(cs, cs->z);
+        lane here = cs->beam.scale;
+        cs->beam.scale = here + 1.0;
+        evaluate(p, cs, w->y, w->by_z, t->by_z, w, at, 0);
+        cs->beam.scale = here;
+    }
     evaluate(p, cs, w->y, w->base_f, t->rate, w, at, 1);
     differentiate(p, at, w);
+    for (int n = 0; moves && n < K + BORDER; n++) w->by_z[n] = slope * (w->by_z[n] - w->base_f[n]);
+    for (int n = 0; moves && n < TOTALS; n++) t->by_z[n] = slope * (t->by_z[n] - t->rate[n]);
     t->warmth = dot(w->cp, w->base_f, K);
     if (!cs->tank) start_row(p, cs, at, w, t);
 }
@@ -101,7 +125,7 @@ static void total_stage(const Plan *p, const Case *cs, const Found *at, const Wo
 }
 
 /* Take the step h prepared above: w->next = the new state, w->stage[5] its error, t->k the totals' stages. */
-static void take_step(const Plan *p, const Case *cs, lane h, Work *w, const Found *at, Totals *t)
+static void take_step(const Plan *p, Case *cs, lane h, Work *w, const Found *at, Totals *t)
 {
     int N = p->species + BORDER;
     lane shift = 1.0 / (GAMMA * h), each = 1.0 / h, slope[TOTALS];
@@ -121,8 +145,13 @@ static void take_step(const Plan *p, const Case *cs, lane h, Work *w, const Foun
                 for (int j = 0; j < i; j++) back += STAGE_C[i - 1][j] * w->stage[j][n];
                 arg[n] = sum, w->rhs[n] = back * each;
             }
+            if (cs->beam.moves) move_light(cs, cs->z + STAGE_Z[i] * h);
             evaluate(p, cs, arg, k, slope, w, &passing, 0);
             for (int n = 0; n < N; n++) k[n] += w->rhs[n];
+        }
+        if (cs->beam.moves && STAGE_BY_Z[i] != 0.0) {
+            for (int n = 0; n < N; n++) k[n] += STAGE_BY_Z[i] * h * w->by_z[n];
+            for (int n = 0; n < TOTALS; n++) slope[n] += STAGE_BY_Z[i] * h * t->by_z[n];
         }
         lane h_r = combine(p, w->base_h, at->capacity, k);
         solve(p, w, k);

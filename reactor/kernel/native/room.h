@@ -21,7 +21,7 @@ static void carve(Room *room, const Plan *p, int lines, int degree, Work *w, Cas
     int K = p->species, N = K + BORDER, R = p->reactions, all_steps = R + p->back;
     lane **species[] = {&w->c, &w->cp, &w->h, &w->g, &w->w, &w->w_S, &w->w_P, &w->w_T, &w->base_h, &w->base_cp,
                         &t->row, &cs->feed};
-    lane **unknowns[] = {&w->f, &w->y, &w->arg, &w->next, &w->rhs, &w->base_f, &w->pivot};
+    lane **unknowns[] = {&w->f, &w->y, &w->arg, &w->next, &w->rhs, &w->base_f, &w->pivot, &w->by_z};
     lane **steps[] = {&w->k, &w->q, &w->q_net, &w->q_S, &w->q_P, &w->q_T, &w->slope, &cs->A};
     lane **by_line[] = {&w->tau, w->photon, w->photon + 1, &cs->beam.entering, &cs->beam.energy};
     for (size_t i = 0; i < sizeof species / sizeof *species; i++) *species[i] = row_of(room, K + 1);
@@ -53,6 +53,7 @@ static int make_room(Room *room, const Plan *p, int lines, int degree, Work *w, 
     EACH(l) { /* a lane that never gets a case reads these */
         cs->conductance[l] = cs->share[l] = (Curve){0.0, 1.0, flat, 1};
         cs->beam.absorbed[l] = cs->beam.transmitted[l] = cs->conductance[l];
+        cs->beam.even[l] = cs->beam.along[l] = cs->conductance[l];
     }
     return 1;
 }

@@ -114,11 +114,19 @@ static void load_beam(March *m, int l, const double *section, const int64_t *lin
                 j < lines && i <= degree ? pool[link[S_SIGMA] + j * (degree + 1) + i] : 0.0;
     }
     beam->absorbed[l] = curve_of(m, link[S_ABSORBED]), beam->transmitted[l] = curve_of(m, link[S_TRANSMITTED]);
-    beam->lines = 0, beam->degree = m->batch->degree;
+    beam->even[l] = curve_of(m, link[S_EVEN]), beam->along[l] = curve_of(m, link[S_ALONG]);
+    beam->lines = 0, beam->degree = m->batch->degree, beam->moves = 0;
     EACH(i) {
-        int own = m->seat[i].job < 0 ? 0 : (int)section_links(m, m->seat + i)[S_LINES];
-        beam->lines = own > beam->lines ? own : beam->lines;
+        const int64_t *its = m->seat[i].job < 0 ? NULL : section_links(m, m->seat + i);
+        beam->lines = its && its[S_LINES] > beam->lines ? (int)its[S_LINES] : beam->lines;
+        beam->moves |= its && its[S_MOVES];
     }
+    AT(beam->whole, l) = 0.0;
+    for (int j = 0; j < lines; j++)
+        AT(beam->whole, l) += SEEN(beam->entering[j], l) * (section[S_STOP] - section[S_START]);
+    lane here = all(section[S_START]), scale, none;
+    read_curves(beam->along, here, &scale, &none);
+    AT(beam->scale, l) = SEEN(scale, l) > 0.0 ? SEEN(scale, l) : 0.0;
 }
 
 /* Enthalpy [J/mol] and cp [J/mol/K] of species s. */
