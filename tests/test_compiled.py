@@ -8,6 +8,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 import reference_kernel.plugflow
+import sanitize_kernel
 import wide_cases
 from fuzz_kernel import fuzz
 from wide_cases import CL2, GAS, RATES, K, beam, job, moles
@@ -406,7 +407,35 @@ def test_a_hundred_thousand_cases_stream_through_in_little_memory():
     assert kilobytes < 300_000
 
 
+def sanitized(*words):
+    """Run the kernel's tests and the fuzzer over a sanitized build; skip where the compiler makes none."""
+    if reason := sanitize_kernel.cannot():
+        pytest.skip(reason)
+    command = [sys.executable, "tests/sanitize_kernel.py", *words]
+    done = subprocess.run(command, cwd=ROOT, capture_output=True, text=True)
+    assert done.returncode == 0, done.stdout + done.stderr
+    assert "mechanisms tried" in done.stdout
+
+
+def test_the_narrow_kernel_runs_clean_under_the_sanitizers():
+    sanitized("short")
+
+
 @pytest.mark.slow
 def test_the_kernel_runs_clean_under_the_sanitizers():
-    done = subprocess.run([sys.executable, "tests/sanitize_kernel.py"], cwd=ROOT, capture_output=True, text=True)
-    assert done.returncode == 0, done.stdout + done.stderr
+    sanitized()
+
+
+def test_the_sanitizers_would_stop_a_kernel_that_reads_beyond_its_arrays(tmp_path):
+    if reason := sanitize_kernel.cannot():
+        pytest.skip(reason)
+    source = tmp_path / "wrong.c"
+    source.write_text("#include <stdlib.h>\nint wrong(int n)\n{\n    int *a = malloc(8), b = 0;\n"
+                      "    a[0] = 1;\n    b = a[n];\n    free(a);\n    return b;\n}\n")
+    command = [*build.compiler(), *build.SANITIZE, "-fPIC", "-shared", str(source), "-o", str(tmp_path / "wrong.so")]
+    subprocess.run(command, check=True, capture_output=True)
+    code = f"import ctypes; ctypes.CDLL({str(tmp_path / 'wrong.so')!r}).wrong(5)"
+    env = {**os.environ, "LD_PRELOAD": sanitize_kernel.runtime(), "ASAN_OPTIONS": "detect_leaks=0"}
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, env=env)
+    assert done.returncode != 0
+    assert "wrong.c:6" in done.stderr

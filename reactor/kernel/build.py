@@ -2,7 +2,8 @@
 Compiles the kernel: `python -m reactor.kernel.build`, and the same from the build hook of the package.
 
 The compiler is $CC, else cc, gcc or clang on the path, else the one of the PyPI package ziglang. REACTOR_SANITIZE=1
-builds with address and undefined-behaviour sanitizers. Needs the standard library alone.
+builds with address and undefined-behaviour sanitizers, REACTOR_NARROW=1 only what runs on every processor, which then
+serves the others too. Needs the standard library alone.
 """
 
 import importlib.util
@@ -22,6 +23,7 @@ BUILDS = (
     ("plain1", 1, 2, ()), ("plain2", 2, 2, ()), ("wide1", 1, 4, ("-mavx2",)), ("wide4", 4, 4, ("-mavx2",)),
     ("wide8", 8, 8, ("-mavx512f", "-mavx512dq", "-mavx512vl", "-mprefer-vector-width=512")),
 )
+FACES = ("march", "rates", "point")
 FLAGS = ("-std=c11", "-O3", "-ffp-contract=off", "-fno-math-errno", "-fvisibility=hidden", "-Wall", "-Wextra",
          "-Wno-psabi", "-D_POSIX_C_SOURCE=200809L")
 SANITIZE = ("-g", "-O1", "-fsanitize=address,undefined", "-fno-sanitize-recover=all", "-fno-omit-frame-pointer")
@@ -59,12 +61,16 @@ def build(target=None):
     target = Path(target) if target else HERE / f"reactor_kernel{ending()}"
     flags = [*FLAGS, *(() if sys.platform == "win32" else ("-fPIC",))]
     sanitize = SANITIZE if os.environ.get("REACTOR_SANITIZE") == "1" else ()
-    wide = platform.machine().lower() in ("x86_64", "amd64")
+    narrow = os.environ.get("REACTOR_NARROW") == "1"
+    wide = platform.machine().lower() in ("x86_64", "amd64") and not narrow
+    served = [f"-D{face}_{name}={face}_plain{min(lanes, 2)}" for name, lanes, _, more in BUILDS if narrow and more
+              for face in FACES]
     with tempfile.TemporaryDirectory() as folder:
         jobs = [([*command, *flags, *sanitize, *more, f"-DBUILD={name}", f"-DLANES={lanes}", f"-DWIDE={width}", "-c",
                   str(HERE / "native" / "kernel.c"), "-o", f"{folder}/{name}.o"])
                 for name, lanes, width, more in BUILDS if wide or not more]
-        jobs.append([*command, *flags, *sanitize, "-c", str(HERE / "native" / "entry.c"), "-o", f"{folder}/entry.o"])
+        entry = str(HERE / "native" / "entry.c")
+        jobs.append([*command, *flags, *sanitize, *served, "-c", entry, "-o", f"{folder}/entry.o"])
         with ThreadPoolExecutor(2) as pool:
             list(pool.map(_run, jobs))
         objects = [job[-1] for job in jobs]
