@@ -49,7 +49,7 @@ def settle(case, plant, solver):
 
 def cut(light, places):
     """Return the light with further borders of its sections."""
-    edges = np.unique(np.concatenate((light.edges, [z for z in places if 0.0 < z < light.edges[-1]])))
+    edges = np.array(sorted({*light.edges.tolist(), *(z for z in places if 0.0 < z < light.edges[-1])}))
     number = np.clip(np.searchsorted(light.edges, edges[:-1], side="right") - 1, 0, len(light.edges) - 2)
     changed = {name: tuple(getattr(light, name)[i] for i in number) for name in ("absorbed", "transmitted", "ends")}
     changed |= {name: getattr(light, name)[number] for name in ("into_gas", "lit", "sleeve_heat")}
@@ -82,8 +82,9 @@ def curves(plant, profile):
         if not here.any():
             found.append(even.curve(light.cells, weight, sigma, 0.5))
             continue
-        x, first = np.unique(depth[here], return_index=True)
-        known = order[here][first]
+        found_at = dict(zip(depth[here][::-1].tolist(), order[here][::-1].tolist(), strict=True))  # the first of equals
+        x = np.array(sorted(found_at))
+        known = np.array([found_at[place] for place in x.tolist()])
         found.append(even.curve(light.cells, weight, sigma, lambda at, x=x, known=known: np.interp(at, x, known)))
     return found
 

@@ -183,8 +183,8 @@ def _rays(scene, found, slant, share, fine):
     """Return the stretches as `Rays`: in order, each ray's weight relative to what it first brings in."""
     order = np.lexsort((found[2], found[0]))
     ray, weight, before, after, reach, *ends, which = found[:, order]
-    old, ray = np.unique(ray.astype(int), return_inverse=True)
-    first = np.append(True, ray[1:] != ray[:-1])
+    first = np.append(True, ray[1:] != ray[:-1])[:len(ray)]
+    old, ray = ray[first].astype(int), np.cumsum(first) - 1
     brought = weight[first]
     weight = weight / brought[ray]
     if not scene.filled and len(old):
