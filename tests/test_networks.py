@@ -514,3 +514,10 @@ def test_chloroform_with_oxygen_is_rated_with_phosgene_and_its_exposure_figures(
     oxygen = 100.0 * 300e-6 / (119.38 * 0.9997 + 32.0 * 300e-6)
     assert 0.1 * oxygen < made_ <= 2.0 * oxygen
     assert any("phosgene" in remark and "OSHA PEL 0.1 ppm" in remark for remark in result.remarks)
+
+
+def test_a_plain_feed_needs_no_network():
+    from reactor.chemistry.network import beyond_small
+    from reactor.rating.plant import PLAIN
+
+    assert not beyond_small(dict.fromkeys(PLAIN, 1.0))

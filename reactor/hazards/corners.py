@@ -15,6 +15,7 @@ from reactor.hazards.explosive import ORDER, Class, Mixture, classify, find, fra
 from reactor.hazards.substitution import mixture_enthalpy, temperature_of
 
 STEP = 2e-3  # relative flow between two points looked at
+PART = 50  # meter errors looked at in one go, from the small ones on
 WIDEST = 0.5  # largest meter error looked at
 
 
@@ -120,15 +121,22 @@ def _error_at_change(book, streams, named, P, premixed, rank):
         return np.nan
     sizes = np.arange(1, round(WIDEST / STEP) + 1) * STEP
     for _ in range(2):
-        signs = np.array(list(product((1.0, -1.0), repeat=len(named))))
-        offsets = (sizes[:, None, None] * signs).reshape(-1, len(named))
-        found = _look(book, streams, named, offsets, P, premixed)[0]
-        worse = found.reshape(len(sizes), -1).max(axis=1) > rank
-        if not worse.any():
+        parts = np.split(sizes, range(PART, len(sizes), PART))
+        found = (_first_worse(book, streams, named, part, P, premixed, rank) for part in parts)
+        first = float(next((size for size in found if size is not None), np.nan))
+        if np.isnan(first):
             return np.nan
-        first = sizes[int(np.argmax(worse))]
         sizes = np.linspace(first - STEP, first, 51)[1:]
-    return float(first)
+    return first
+
+
+def _first_worse(book, streams, named, sizes, P, premixed, rank):
+    """Return the first of the common errors at which some corner is worse than `rank`, else None."""
+    signs = np.array(list(product((1.0, -1.0), repeat=len(named))))
+    offsets = (sizes[:, None, None] * signs).reshape(-1, len(named))
+    found = _look(book, streams, named, offsets, P, premixed)[0]
+    worse = found.reshape(len(sizes), -1).max(axis=1) > rank
+    return sizes[int(np.argmax(worse))] if worse.any() else None
 
 
 def _words(named, offset):

@@ -6,7 +6,6 @@ from typing import NamedTuple
 import numpy as np
 
 from reactor import library
-from reactor.chemistry.network.volatility import corresponding_states
 
 COLDEST, HOTTEST = 173.15, 473.15  # K; how far the tables are followed
 POINTS = 1501  # of the grid between them, 0.2 K apart
@@ -131,6 +130,8 @@ def _grid():
 @cache
 def _estimated(constants):
     """Return 1/vapour pressure [1/Pa] on the grid by corresponding states."""
+    from reactor.chemistry.network.volatility import corresponding_states
+
     boiling, hottest, highest = constants
     return 1 / corresponding_states(boiling, hottest, highest, _grid()[0])
 

@@ -6,10 +6,11 @@ import numpy as np
 
 from reactor import chemistry, heat, photons
 from reactor.case import Sleeve
-from reactor.chemistry import network
 from reactor.chemistry import wall as wall_chemistry
 from reactor.models.assemble import Plant, mixed_feed
 
+# what the small mechanism was made for: feeds of these alone need no look at networks
+PLAIN = frozenset(("CH4", "C2H6", "C3H8", "CH3Cl", "CH2Cl2", "C2H5Cl", "Cl2", "HCl", "N2", "Ar", "CO2", "O2"))
 BODY = 0.01  # m, radius of a lamp outside the gas where it is not stated: an arc or phosphor tube of 20 mm
 MOST = 120  # species of a mechanism that is made unasked
 HOTTER = 150.0  # K; how much hotter than its feed a made mechanism is weighed where no limit is stated
@@ -29,7 +30,11 @@ def mechanism(case):
     for stream in case.feed.values():
         for species, amount in stream.moles.items():
             moles[species] = moles.get(species, 0.0) + amount
-    if not moles.get("Cl2") or not network.beyond_small(moles):
+    if not moles.get("Cl2") or moles.keys() <= PLAIN:
+        return chemistry.mechanism()
+    from reactor.chemistry import network
+
+    if not network.beyond_small(moles):
         return chemistry.mechanism()
     coldest = min(stream.temperature for stream in case.feed.values())
     fed = {species: amount for species, amount in moles.items() if network.find(species)}
