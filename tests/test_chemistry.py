@@ -1,5 +1,7 @@
 """The mechanism that comes with the program, its tables, users' own files, and the loss of atoms at walls."""
 
+import dataclasses
+import hashlib
 import os
 import warnings
 
@@ -8,7 +10,7 @@ import numpy as np
 import pytest
 
 from reactor import chemistry, library
-from reactor.chemistry import wall
+from reactor.chemistry import kept, load, wall
 from reactor.chemistry.tables import LINDEMANN, NEVER, tables
 from reactor.errors import CaseError
 
@@ -345,6 +347,115 @@ def test_transport_of_a_mixture_is_that_of_cantera(gas):
     mass = mole @ gas.molar_mass
     assert found.heat_capacity_mass == approx(mole @ gas.heat_capacity(350.0) / mass, rel=1e-12)
     assert found.diffusivity_chlorine_atom == approx(solution.mix_diff_coeffs[solution.species_index("Cl")])
+
+
+def random_states(gas, count, seed):
+    """Yield (T, P, mole fractions), half of the species absent."""
+    rng = np.random.default_rng(seed)
+    for _ in range(count):
+        x = rng.dirichlet(np.full(len(gas.species), 0.1)) * (rng.random(len(gas.species)) < 0.5)
+        x[gas.index["Cl2"]] += 0.1
+        yield rng.uniform(250.0, 1500.0), 10 ** rng.uniform(4.0, 6.0), x / x.sum()
+
+
+def test_transport_is_that_of_cantera_at_random_states(gas):
+    solution = ct.Solution(str(FILE), "gas-lit")
+    atom = solution.species_index("Cl")
+    for T, P, x in random_states(gas, 100, 5):
+        solution.TPX = T, P, x
+        found = gas.transport(T, P, x)
+        ours = found.viscosity, found.conductivity, found.diffusivity_chlorine_atom
+        theirs = solution.viscosity, solution.thermal_conductivity, solution.mix_diff_coeffs[atom]
+        assert ours == approx(theirs, rel=1e-10)
+
+
+# ---------------------------------------------------------------- the cache folder
+
+
+@pytest.fixture
+def cached(tmp_path, monkeypatch):
+    """Return a function that reads a file as a new process would, and the cache folder."""
+    monkeypatch.setenv("REACTOR_CACHE", str(tmp_path / "cache"))
+
+    def read(path=None):
+        load._read.cache_clear()
+        return chemistry.mechanism(path)
+
+    yield read, tmp_path / "cache"
+    load._read.cache_clear()
+
+
+def all_of(value):
+    """Return a mechanism as nested plain values, for comparison digit by digit."""
+    if dataclasses.is_dataclass(value):
+        return {f.name: all_of(getattr(value, f.name)) for f in dataclasses.fields(value)}
+    if isinstance(value, np.ndarray):
+        return value.dtype.str, value.shape, value.tobytes()
+    if isinstance(value, tuple):
+        return type(value), *map(all_of, value)
+    return value
+
+
+def test_a_mechanism_is_kept_whole_and_found_again_without_cantera(cached, monkeypatch):
+    read, folder = cached
+    first = read()
+    assert len(list(folder.glob("*.mechanism"))) == 1
+    monkeypatch.setattr(load, "_made", None)
+    assert all_of(read()) == all_of(first)
+
+
+def spoil_end(data):
+    return data[:-9]
+
+
+def spoil_bit(data):
+    return data[:5000] + bytes([data[5000] ^ 1]) + data[5001:]
+
+
+def spoil_key(data):
+    return bytes(32) + data[32:]
+
+
+def spoil_all(data):
+    return b"PK\x03\x04 not ours"
+
+
+def signed(body):
+    return hashlib.sha256(body).digest() + body
+
+
+def spoil_sizes(data):
+    """Return a file with a right digest, one of whose arrays is of another shape."""
+    return data[:32] + signed(data[64:].replace(b'["E", [', b'["E", [1', 1))
+
+
+def spoil_names(data):
+    return data[:32] + signed(data[64:].replace(b'"wall"', b'"well"', 1))
+
+
+@pytest.mark.parametrize("spoil", [spoil_end, spoil_bit, spoil_key, spoil_all, spoil_sizes, spoil_names])
+def test_a_stale_broken_or_foreign_mechanism_is_made_anew(cached, spoil):
+    read, folder = cached
+    first, file = read(), next(folder.glob("*.mechanism"))
+    good = file.read_bytes()
+    file.write_bytes(spoil(good))
+    assert file.read_bytes() != good
+    assert all_of(read()) == all_of(first)
+    assert file.read_bytes() == good
+
+
+def test_a_changed_file_is_another_mechanism(cached, tmp_path):
+    read, folder = cached
+    file = tmp_path / "mine.yaml"
+    for rate in (RATE, RATE.replace("1.0e", "2.0e")):
+        file.write_text(HEAD + SPECIES + f"reactions:\n{LIGHT}{WALL}  - {{equation: H + Cl => HCl, {rate}}}\n")
+        read(file)
+    assert len(list(folder.glob("*.mechanism"))) == 2
+
+
+def test_a_file_that_takes_species_from_another_is_not_kept():
+    assert kept.key(b"species: [{nasa_gas.yaml/species: [O2]}]", "mine.yaml", False) is None
+    assert kept.key(b"species: [O2]", "mine.yaml", False) != kept.key(b"species: [N2]", "mine.yaml", False)
 
 
 # ---------------------------------------------------------------- walls

@@ -8,23 +8,24 @@ from pathlib import Path
 import pytest
 
 PACKAGE = Path(__file__).parent.parent / "reactor"
-ROOMS = ["errors", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "kernel", "models",
-         "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli"]
+ROOMS = ["errors", "store", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "kernel",
+         "models", "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli"]
 MAY_IMPORT = {
     "errors": set(),
+    "store": set(),
     "curve": set(),
     "units": {"errors"},
     "library": {"errors", "units"},
     "case": {"errors", "units", "library"},
     "stream": {"errors", "library"},
     "photons": {"errors", "curve", "units", "library"},
-    "chemistry": {"errors", "curve", "units", "library"},
+    "chemistry": {"errors", "store", "curve", "units", "library"},
     "heat": {"errors", "curve", "units", "library"},
-    "kernel": {"errors"},
+    "kernel": {"errors", "store"},
     "models": {"errors", "curve", "library", "case", "stream", "photons", "chemistry", "heat", "kernel"},
     "hazards": {"errors", "curve", "units", "library", "stream", "chemistry"},
     "result": {"errors", "units", "library", "case", "stream"},
-    "rating": {"errors", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "models",
+    "rating": {"errors", "store", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "models",
                "hazards", "result"},
     "report": {"errors", "units", "library", "result"},
 }

@@ -7,7 +7,7 @@ import numpy as np
 
 from reactor.chemistry.phase import phase
 from reactor.chemistry.tables import Tables
-from reactor.errors import CaseError
+from reactor.chemistry.transport import Fits, conductivity, diffusivity, fits, viscosity
 from reactor.units import GAS_CONSTANT
 
 
@@ -89,6 +89,8 @@ class Mechanism:
         {species: (boiling point [K], critical temperature [K], critical pressure [Pa])} where the file states them.
     remarks : tuple of str
         What Cantera remarked when it read the file; empty for the mechanism that comes with the program.
+    fits : Fits or None
+        Transport properties of the pure gases, where the file holds their data.
     """
 
     name: str
@@ -114,6 +116,7 @@ class Mechanism:
     cited: tuple
     remarks: tuple
     condensing: dict = field(default_factory=dict)
+    fits: Fits | None = None
 
     def heat_capacity(self, T):
         """
@@ -208,19 +211,14 @@ class Mechanism:
         CaseError
             When the mechanism file holds no transport data.
         """
-        gas = self._mixture(T, P, moles)
+        pure = self.fits
+        if pure is None:
+            pure = fits(phase(self.path, self.phase, self.stamp, transport=True)[0], self.index["Cl"])
+        x = np.maximum(moles, 0.0)
+        x = x / x.sum()
+        mass = float(x @ self.molar_mass)
         return Transport(
-            gas.viscosity, gas.thermal_conductivity, gas.cp_mass, gas.density,
-            float(gas.mix_diff_coeffs[self.index["Cl"]]),
+            viscosity(pure, self.molar_mass, T, x), conductivity(pure, T, x),
+            float(x @ self.heat_capacity(T)) / mass, P * mass / (GAS_CONSTANT * T),
+            diffusivity(pure, self.molar_mass, self.index["Cl"], (T, P), x),
         )  # fmt: skip
-
-    def _mixture(self, T, P, moles):
-        gas, _ = phase(self.path, self.phase, self.stamp, transport=True)
-        if gas.transport_model != "mixture-averaged":
-            raise CaseError(
-                f"{self.path}: no transport data, which films and walls need; "
-                "add `transport: mixture-averaged` to the phase and a block "
-                "`transport: {model: gas, ...}` to every species"
-            )
-        gas.TPX = T, P, np.maximum(moles, 0.0)
-        return gas

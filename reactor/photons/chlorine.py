@@ -1,5 +1,7 @@
 """The absorption cross-section of Cl2 (base e): the formula, how far to trust it, and its polynomial."""
 
+from functools import cache
+
 import numpy as np
 from numpy.polynomial import chebyshev
 
@@ -120,9 +122,14 @@ def sigma_fit(wavelength):
         return np.zeros((0, FIT_TERMS))
     nodes = np.cos(np.pi * (np.arange(4 * FIT_TERMS) + 0.5) / (4 * FIT_TERMS))
     sigma = _formula(wavelength[:, None], FIT_CENTRE + FIT_HALF * nodes)
-    series = chebyshev.chebfit(nodes, sigma.T, FIT_TERMS - 1).T
-    plain = [chebyshev.cheb2poly(row) for row in series]
-    return np.array([np.pad(row, (0, FIT_TERMS - len(row))) for row in plain])
+    return chebyshev.chebfit(nodes, sigma.T, FIT_TERMS - 1).T @ _powers()
+
+
+@cache
+def _powers():
+    """Return the powers of t in each Chebyshev polynomial, (FIT_TERMS, FIT_TERMS)."""
+    rows = [chebyshev.cheb2poly(row) for row in np.eye(FIT_TERMS)]
+    return np.array([np.pad(row, (0, FIT_TERMS - len(row))) for row in rows])
 
 
 def quantum_yield(wavelength):

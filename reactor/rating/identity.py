@@ -4,7 +4,9 @@ import hashlib
 from functools import cache
 from pathlib import Path
 
-from reactor import library
+import numpy as np
+
+from reactor import library, store
 
 
 def inputs(case):
@@ -56,17 +58,15 @@ def rates(gas):
 
 def identity(case, gas):
     """Return the hashes of case, data and program, and the versions."""
-    from importlib.metadata import version
-
     return {
         "case": case.hash(),
         "data": digest("data"),
         "mechanism": hashlib.sha256(gas.path.read_bytes()).hexdigest(),
-        "program": version("photochlorination-reactor"),
+        "program": store.version("photochlorination-reactor"),
         "code": digest("code"),
-        "numpy": version("numpy"),
-        "cantera": version("cantera"),
-        "scipy": version("scipy"),
+        "numpy": np.__version__,
+        "cantera": store.version("cantera"),
+        "scipy": store.version("scipy"),
     }
 
 
