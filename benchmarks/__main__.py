@@ -3,10 +3,10 @@
 import platform
 import sys
 
-from benchmarks import kernel, single, sweep
+from benchmarks import cold, kernel, single, sweep
 
 FIGURES = {"single": kernel.single, "single_lsoda": kernel.single_lsoda, "sweep": kernel.sweep,
-           "size_scaling": kernel.size_scaling, "program": single.run, "study": sweep.run}
+           "size_scaling": kernel.size_scaling, "program": single.run, "study": sweep.run, "cold": cold.run}
 
 
 def main(names):

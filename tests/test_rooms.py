@@ -65,6 +65,17 @@ def test_an_upward_import_would_be_caught(tmp_path):
     assert set(imported(wrong)) == {"kernel", "models", "cli"}
 
 
+def test_rating_a_case_whose_mechanism_is_known_loads_no_heavy_package():
+    code = (
+        "import sys\nfrom reactor.case import load\nfrom reactor.rating import rate\n"
+        f"rate(load({str(PACKAGE.parent / 'cases' / 'lapwing_ten.toml')!r}))\n"
+        "heavy = {'pandas', 'matplotlib', 'scipy', 'cantera', 'pint', 'ht', 'fluids', 'numpy.ma'} & set(sys.modules)\n"
+        "print('HEAVY', sorted(heavy))\n"
+    )
+    outs = [subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True).stdout for _ in "12"]
+    assert outs[-1].splitlines()[-1] == "HEAVY []"  # the first run may have met the mechanism for the first time
+
+
 @pytest.mark.parametrize("words", [["--help"], ["rate", "--help"], ["--version"]])
 def test_help_loads_no_heavy_package(words):
     code = (

@@ -109,7 +109,7 @@ def _atoms(gas):
 def _assemble(names, grid, own, atoms, molecule):
     C, H, Cl, rest = atoms.T
     saturated = molecule & (C > 0) & (rest == 0) & (H + Cl == 2 * C + 2)
-    sizes = np.unique(C[saturated])
+    sizes = np.array(sorted(set(C[saturated])))
     step = _mean_step(own, atoms, saturated)
     rungs = [_rungs(size, own, atoms, saturated, step) for size in sizes]
     place = {size: rungs[s] for s, size in enumerate(sizes)}

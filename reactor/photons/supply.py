@@ -120,7 +120,7 @@ def light(lamps, sleeve, inside_radius, outside_radius, length):
     """
     _check(lamps, sleeve, inside_radius, outside_radius)
     known = [_known(each) for each in lamps]
-    line = np.unique(_rounded(np.concatenate([np.zeros(0), *(each.spectrum.wavelength for each in known)])))
+    line = np.array(sorted({x for each in known for x in _rounded(each.spectrum.wavelength).tolist()}), float)
     sources = [_source(*pair, line) for pair in zip(lamps, known, strict=True)]
     radiant = sum((source.radiant for source in sources), np.zeros(len(line)))
     geometry = _field(lamps, known, sleeve, inside_radius, outside_radius)
