@@ -277,11 +277,42 @@ def test_rate_laws_beyond_the_tables_are_refused_by_name(mine, line, said):
     assert "mine.yaml" in str(caught.value)
 
 
-def test_nine_coefficient_thermo_is_refused_by_name(mine):
+def with_thermo(thermo):
+    """Return the species with another thermo for H."""
     before, after = SPECIES.split("  - {name: H,")
-    after = after.replace("NASA7", "NASA9", 1).replace("[[3.5,", "[[0, 0, 3.5,", 1)
-    with pytest.raises(CaseError, match="H: its thermo is no NASA7 polynomial"):
-        mine(LIGHT + WALL, species=f"{before}  - {{name: H,{after}")
+    _, end = after.split("thermo: {", 1)[1].split("}}", 1)
+    return f"{before}  - {{name: H, composition: {{H: 1}}, thermo: {{{thermo}}}}}{end}"
+
+
+def nine(*limits):
+    """Return a NASA9 polynomial in ranges between these temperatures: cp/R = 3.5 + 2/T + 1/T^2."""
+    rows = ", ".join(["[1, 2, 3.5, 0, 0, 0, 0, 0, 0]"] * (len(limits) - 1))
+    return f"model: NASA9, temperature-ranges: {list(limits)}, data: [{rows}]"
+
+
+def test_other_thermo_is_refused_by_name(mine):
+    with pytest.raises(CaseError, match="H: its thermo is no NASA polynomial"):
+        mine(LIGHT + WALL, species=with_thermo("model: constant-cp, T0: 300 K, h0: 0 J/mol, s0: 0 J/mol/K, cp0: 20 J/mol/K"))
+
+
+@pytest.mark.parametrize(("limits", "kept", "remarks"), [
+    ((200.0, 3000.0), (200.0, 3000.0, 3000.0), 0),
+    ((200.0, 1000.0, 6000.0), (200.0, 1000.0, 6000.0), 0),
+    ((200.0, 1000.0, 6000.0, 20000.0), (200.0, 1000.0, 6000.0), 1),
+    ((50.0, 200.0, 1000.0, 6000.0, 20000.0), (200.0, 1000.0, 6000.0), 1),
+])  # fmt: skip
+def test_of_nine_coefficient_thermo_the_ranges_between_200_and_3000_kelvin_are_taken(mine, limits, kept, remarks):
+    gas = mine(LIGHT + WALL, species=with_thermo(nine(*limits)))
+    H, t = gas.index["H"], gas.tables
+    assert (t.t_low[H], t.t_mid[H], t.t_high[H]) == kept
+    assert [remark for remark in gas.remarks if "NASA9" in remark] == ([
+        "NASA9 polynomials of 1 species: ranges outside 200 to 3000 K are left out"] * remarks)
+    assert gas.heat_capacity(250.0)[H] == approx(R * (3.5 + 2 / 250.0 + 1 / 250.0**2), rel=1e-14)
+
+
+def test_nine_coefficient_thermo_of_three_useful_ranges_is_refused_by_name(mine):
+    with pytest.raises(CaseError, match=r"H: the tables hold two ranges of its NASA9 polynomial .*, it has 3 there"):
+        mine(LIGHT + WALL, species=with_thermo(nine(200.0, 600.0, 1000.0, 6000.0)))
 
 
 @pytest.mark.parametrize(("reactions", "said"), [

@@ -19,7 +19,7 @@ ELSEWHERE = re.compile(rb"\.ya?ml\s*[/\"']")  # species or reactions from anothe
 LOOSE = ("molar_mass", "atoms", "radical", "start", "valid", "f298", "g")
 SHAPES = {  # by the sizes R, K, E; the rest of `Tables` is (R,)
     **dict.fromkeys(("reactants", "products", "efficiencies"), "RK"), "troe": "R4",
-    **dict.fromkeys(("nasa_low", "nasa_high"), "K7"), **dict.fromkeys(("t_mid", "t_low", "t_high"), "K"),
+    **dict.fromkeys(("nasa_low", "nasa_high"), "K9"), **dict.fromkeys(("t_mid", "t_low", "t_high"), "K"),
     "molar_mass": "K", "atoms": "KE", "radical": "K", "valid": "R2", "f298": "R", "g": "R",
     **dict.fromkeys(Fits._fields, "K5"),
 }  # fmt: skip

@@ -9,7 +9,7 @@ from reactor import library
 from reactor.chemistry import kept
 from reactor.chemistry.phase import names, phase
 from reactor.chemistry.record import Mechanism
-from reactor.chemistry.tables import tables
+from reactor.chemistry.tables import left_out, tables
 from reactor.chemistry.transport import fits
 from reactor.errors import CaseError
 
@@ -94,7 +94,7 @@ def _made(file, stamp, shipped):
         g=np.array([_numbers(note.get("uncertainty", {}).get("g"))[0] for note in notes]),
         status=tuple(note.get("status", NOT_STATED) for note in notes),
         equations=tuple(reaction.equation for reaction in gas.reactions()),
-        cited=_cited(notes, gas, file), remarks=remarks, condensing=_condensing(gas),
+        cited=_cited(notes, gas, file), remarks=(*remarks, *left_out(gas)), condensing=_condensing(gas),
         fits=_fits(file, name, stamp, species.index("Cl")),
     )  # fmt: skip
 

@@ -133,7 +133,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] + T * (a[..., 2] + T * (a[..., 3] + T * a[..., 4]))
-        return GAS_CONSTANT * (a[..., 0] + T * series)
+        found = a[..., 0] + T * series
+        if self.tables.inverse_powers:
+            found = found + (a[..., 8] + a[..., 7] / T) / T
+        return GAS_CONSTANT * found
 
     def enthalpy(self, T):
         """
@@ -150,7 +153,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] / 2 + T * (a[..., 2] / 3 + T * (a[..., 3] / 4 + T * a[..., 4] / 5))
-        return GAS_CONSTANT * (T * (a[..., 0] + T * series) + a[..., 5])
+        found = T * (a[..., 0] + T * series) + a[..., 5]
+        if self.tables.inverse_powers:
+            found = found + a[..., 8] * np.log(T) - a[..., 7] / T
+        return GAS_CONSTANT * found
 
     def entropy(self, T):
         """
@@ -167,7 +173,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] + T * (a[..., 2] / 2 + T * (a[..., 3] / 3 + T * a[..., 4] / 4))
-        return GAS_CONSTANT * (a[..., 0] * np.log(T) + T * series + a[..., 6])
+        found = a[..., 0] * np.log(T) + T * series + a[..., 6]
+        if self.tables.inverse_powers:
+            found = found - (a[..., 8] + a[..., 7] / (2 * T)) / T
+        return GAS_CONSTANT * found
 
     def _polynomials(self, T):
         T = np.asarray(T, dtype=float)[..., None]

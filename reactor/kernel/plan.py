@@ -14,7 +14,7 @@ from reactor import store
 from reactor.errors import ReactorError
 from reactor.kernel.elimination import eliminate, order_species
 
-MARK = 0x52504B31  # as in native/plan.h; changes with the order of the arrays
+MARK = 0x52504B32  # as in native/plan.h; changes with the order of the arrays
 BORDER = 4  # total moles, pressure, coolant temperature, temperature
 TABLES = ("reactants", "products", "reversible", "third_body", "falloff", "efficiencies", "b", "E", "low_b", "low_E",
           "troe", "nasa_low", "nasa_high", "t_mid")
@@ -159,7 +159,7 @@ def _open(ints, reals):
     K, R, moving = at["species"], at["reactions"], at["reactions"] - at["fixed"]
     others = sum(int(found[f"{name}_sizes"][2]) for name in ("equilibrium", "production", "jacobian"))
     size = (others + 2 * moving + 2 * at["back"] + R + at["bodies"] + at["specials"] + 7 * at["falloffs"] + at["items"]
-            + 37 * K + 2)
+            + 45 * K + 2)
     sound = (
         len(reals) == size and at["first_back"] + at["back"] == R and at["fixed"] <= at["first_back"]
         and at["bodies"] == at["colliders"] + at["falloffs"] and max(at["photolysis"], at["wall"]) < at["fixed"]
