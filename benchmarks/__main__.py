@@ -3,10 +3,11 @@
 import platform
 import sys
 
-from benchmarks import field, kernel, single, sweep
+from benchmarks import cold, field, kernel, single, sweep
 
 FIGURES = {"single": kernel.single, "single_lsoda": kernel.single_lsoda, "sweep": kernel.sweep,
-           "size_scaling": kernel.size_scaling, "program": single.run, "study": sweep.run, "field": field.run}
+           "size_scaling": kernel.size_scaling, "program": single.run, "study": sweep.run, "field": field.run,
+           "cold": cold.run}
 
 
 def main(names):

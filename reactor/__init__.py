@@ -20,6 +20,9 @@ def load(path, overrides=(), strict=False):
 def rate(case):
     """Rate a checked case, its recycle closed first where it has one; see `reactor.rating.rate`."""
     from reactor.rating import rate as run
+
+    if case.recycle is None:
+        return run(case)
     from reactor.sizing.loop import closed
 
     return run(closed(case))

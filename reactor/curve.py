@@ -57,12 +57,48 @@ def tabulate(function, start, stop, points):
     >>> print(f"{y:.6f} {dy:.6f}")
     0.841471 0.540302
     """
-    from scipy.interpolate import CubicSpline
-
     grid = np.linspace(start, stop, points)
     value = np.asarray(function(grid), float)
-    slope = CubicSpline(grid, value)(grid, 1)
-    return Curve(float(start), float(grid[1] - grid[0]), value, slope)
+    step = float(grid[1] - grid[0])
+    return Curve(float(start), step, value, spline_slopes(value, step))
+
+
+def spline_slopes(value, step):
+    """
+    Return the slopes at the knots of the cubic spline through four or more even values, not-a-knot at both ends.
+
+    Parameters
+    ----------
+    value : array (N,)
+        Values at the knots. [-]
+    step : float
+        Distance of two knots. [-]
+
+    Returns
+    -------
+    array (N,)
+
+    Examples
+    --------
+    >>> import numpy as np
+    >>> print(spline_slopes(np.arange(5.0) ** 3, 1.0).round(9))
+    [ 0.  3. 12. 27. 48.]
+    """
+    y = np.asarray(value, float)
+    if len(y) < 4:
+        raise ValueError("a spline needs four values or more")
+    right = 3 * (y[2:] - y[:-2])
+    first, last = (y[2] + 4 * y[1] - 5 * y[0]) / 2, (5 * y[-1] - 4 * y[-2] - y[-3]) / 2
+    left = [first, *right.tolist()]  # d0 + 2 d1 = first; d[i-1] + 4 d[i] + d[i+1] = right[i-1]; 2 d[-2] + d[-1] = last
+    upper = [2.0]
+    for i in range(1, len(left)):
+        pivot = 1.0 / (4.0 - upper[-1])
+        upper.append(pivot)
+        left[i] = (left[i] - left[i - 1]) * pivot
+    slope = [(last - 2 * left[-1]) / (1 - 2 * upper[-1])]
+    for i in range(len(left) - 1, -1, -1):
+        slope.append(left[i] - upper[i] * slope[-1])
+    return np.array(slope[::-1]) / step
 
 
 def constant(value):

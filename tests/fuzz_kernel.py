@@ -39,9 +39,10 @@ def mechanism(rng):
     t.E = rng.choice([0.0, 1e3, 1e4], count)
     t.low_A, t.low_b, t.low_E = 10 ** rng.uniform(-2, 6, count), rng.uniform(-4, 0, count), rng.uniform(0, 2e3, count)
     t.troe = np.where(rng.random((count, 1)) < 0.5, LINDEMANN, (rng.uniform(0.1, 0.9), 100.0, 1500.0, 1e30))
-    t.nasa_low, t.t_mid = np.zeros((species, 7)), rng.uniform(800, 1200, species)
+    t.nasa_low, t.t_mid = np.zeros((species, 9)), rng.uniform(800, 1200, species)
     t.nasa_low[:, 0], t.nasa_low[:, 1] = rng.uniform(2, 8, species), rng.uniform(0, 5e-3, species)
     t.nasa_low[:, 5], t.nasa_low[:, 6] = rng.uniform(-2e4, 1e4, species), rng.uniform(0, 20, species)
+    t.nasa_low[:, 7:] = (rng.random() < 0.5) * rng.normal(size=(species, 2)) * [2e3, 30.0]
     t.nasa_high, t.reference_pressure = t.nasa_low.copy(), 101325.0
     return t
 

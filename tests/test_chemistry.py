@@ -1,5 +1,7 @@
 """The mechanism that comes with the program, its tables, users' own files, and the loss of atoms at walls."""
 
+import dataclasses
+import hashlib
 import os
 import warnings
 
@@ -8,7 +10,7 @@ import numpy as np
 import pytest
 
 from reactor import chemistry, library
-from reactor.chemistry import wall
+from reactor.chemistry import kept, load, wall
 from reactor.chemistry.tables import LINDEMANN, NEVER, tables
 from reactor.errors import CaseError
 
@@ -275,11 +277,42 @@ def test_rate_laws_beyond_the_tables_are_refused_by_name(mine, line, said):
     assert "mine.yaml" in str(caught.value)
 
 
-def test_nine_coefficient_thermo_is_refused_by_name(mine):
+def with_thermo(thermo):
+    """Return the species with another thermo for H."""
     before, after = SPECIES.split("  - {name: H,")
-    after = after.replace("NASA7", "NASA9", 1).replace("[[3.5,", "[[0, 0, 3.5,", 1)
-    with pytest.raises(CaseError, match="H: its thermo is no NASA7 polynomial"):
-        mine(LIGHT + WALL, species=f"{before}  - {{name: H,{after}")
+    _, end = after.split("thermo: {", 1)[1].split("}}", 1)
+    return f"{before}  - {{name: H, composition: {{H: 1}}, thermo: {{{thermo}}}}}{end}"
+
+
+def nine(*limits):
+    """Return a NASA9 polynomial in ranges between these temperatures: cp/R = 3.5 + 2/T + 1/T^2."""
+    rows = ", ".join(["[1, 2, 3.5, 0, 0, 0, 0, 0, 0]"] * (len(limits) - 1))
+    return f"model: NASA9, temperature-ranges: {list(limits)}, data: [{rows}]"
+
+
+def test_other_thermo_is_refused_by_name(mine):
+    with pytest.raises(CaseError, match="H: its thermo is no NASA polynomial"):
+        mine(LIGHT + WALL, species=with_thermo("model: constant-cp, T0: 300 K, h0: 0 J/mol, s0: 0 J/mol/K, cp0: 20 J/mol/K"))
+
+
+@pytest.mark.parametrize(("limits", "kept", "remarks"), [
+    ((200.0, 3000.0), (200.0, 3000.0, 3000.0), 0),
+    ((200.0, 1000.0, 6000.0), (200.0, 1000.0, 6000.0), 0),
+    ((200.0, 1000.0, 6000.0, 20000.0), (200.0, 1000.0, 6000.0), 1),
+    ((50.0, 200.0, 1000.0, 6000.0, 20000.0), (200.0, 1000.0, 6000.0), 1),
+])  # fmt: skip
+def test_of_nine_coefficient_thermo_the_ranges_between_200_and_3000_kelvin_are_taken(mine, limits, kept, remarks):
+    gas = mine(LIGHT + WALL, species=with_thermo(nine(*limits)))
+    H, t = gas.index["H"], gas.tables
+    assert (t.t_low[H], t.t_mid[H], t.t_high[H]) == kept
+    assert [remark for remark in gas.remarks if "NASA9" in remark] == ([
+        "NASA9 polynomials of 1 species: ranges outside 200 to 3000 K are left out"] * remarks)
+    assert gas.heat_capacity(250.0)[H] == approx(R * (3.5 + 2 / 250.0 + 1 / 250.0**2), rel=1e-14)
+
+
+def test_nine_coefficient_thermo_of_three_useful_ranges_is_refused_by_name(mine):
+    with pytest.raises(CaseError, match=r"H: the tables hold two ranges of its NASA9 polynomial .*, it has 3 there"):
+        mine(LIGHT + WALL, species=with_thermo(nine(200.0, 600.0, 1000.0, 6000.0)))
 
 
 @pytest.mark.parametrize(("reactions", "said"), [
@@ -345,6 +378,115 @@ def test_transport_of_a_mixture_is_that_of_cantera(gas):
     mass = mole @ gas.molar_mass
     assert found.heat_capacity_mass == approx(mole @ gas.heat_capacity(350.0) / mass, rel=1e-12)
     assert found.diffusivity_chlorine_atom == approx(solution.mix_diff_coeffs[solution.species_index("Cl")])
+
+
+def random_states(gas, count, seed):
+    """Yield (T, P, mole fractions), half of the species absent."""
+    rng = np.random.default_rng(seed)
+    for _ in range(count):
+        x = rng.dirichlet(np.full(len(gas.species), 0.1)) * (rng.random(len(gas.species)) < 0.5)
+        x[gas.index["Cl2"]] += 0.1
+        yield rng.uniform(250.0, 1500.0), 10 ** rng.uniform(4.0, 6.0), x / x.sum()
+
+
+def test_transport_is_that_of_cantera_at_random_states(gas):
+    solution = ct.Solution(str(FILE), "gas-lit")
+    atom = solution.species_index("Cl")
+    for T, P, x in random_states(gas, 100, 5):
+        solution.TPX = T, P, x
+        found = gas.transport(T, P, x)
+        ours = found.viscosity, found.conductivity, found.diffusivity_chlorine_atom
+        theirs = solution.viscosity, solution.thermal_conductivity, solution.mix_diff_coeffs[atom]
+        assert ours == approx(theirs, rel=1e-10)
+
+
+# ---------------------------------------------------------------- the cache folder
+
+
+@pytest.fixture
+def cached(tmp_path, monkeypatch):
+    """Return a function that reads a file as a new process would, and the cache folder."""
+    monkeypatch.setenv("REACTOR_CACHE", str(tmp_path / "cache"))
+
+    def read(path=None):
+        load._read.cache_clear()
+        return chemistry.mechanism(path)
+
+    yield read, tmp_path / "cache"
+    load._read.cache_clear()
+
+
+def all_of(value):
+    """Return a mechanism as nested plain values, for comparison digit by digit."""
+    if dataclasses.is_dataclass(value):
+        return {f.name: all_of(getattr(value, f.name)) for f in dataclasses.fields(value)}
+    if isinstance(value, np.ndarray):
+        return value.dtype.str, value.shape, value.tobytes()
+    if isinstance(value, tuple):
+        return type(value), *map(all_of, value)
+    return value
+
+
+def test_a_mechanism_is_kept_whole_and_found_again_without_cantera(cached, monkeypatch):
+    read, folder = cached
+    first = read()
+    assert len(list(folder.glob("*.mechanism"))) == 1
+    monkeypatch.setattr(load, "_made", None)
+    assert all_of(read()) == all_of(first)
+
+
+def spoil_end(data):
+    return data[:-9]
+
+
+def spoil_bit(data):
+    return data[:5000] + bytes([data[5000] ^ 1]) + data[5001:]
+
+
+def spoil_key(data):
+    return bytes(32) + data[32:]
+
+
+def spoil_all(data):
+    return b"PK\x03\x04 not ours"
+
+
+def signed(body):
+    return hashlib.sha256(body).digest() + body
+
+
+def spoil_sizes(data):
+    """Return a file with a right digest, one of whose arrays is of another shape."""
+    return data[:32] + signed(data[64:].replace(b'["E", [', b'["E", [1', 1))
+
+
+def spoil_names(data):
+    return data[:32] + signed(data[64:].replace(b'"wall"', b'"well"', 1))
+
+
+@pytest.mark.parametrize("spoil", [spoil_end, spoil_bit, spoil_key, spoil_all, spoil_sizes, spoil_names])
+def test_a_stale_broken_or_foreign_mechanism_is_made_anew(cached, spoil):
+    read, folder = cached
+    first, file = read(), next(folder.glob("*.mechanism"))
+    good = file.read_bytes()
+    file.write_bytes(spoil(good))
+    assert file.read_bytes() != good
+    assert all_of(read()) == all_of(first)
+    assert file.read_bytes() == good
+
+
+def test_a_changed_file_is_another_mechanism(cached, tmp_path):
+    read, folder = cached
+    file = tmp_path / "mine.yaml"
+    for rate in (RATE, RATE.replace("1.0e", "2.0e")):
+        file.write_text(HEAD + SPECIES + f"reactions:\n{LIGHT}{WALL}  - {{equation: H + Cl => HCl, {rate}}}\n")
+        read(file)
+    assert len(list(folder.glob("*.mechanism"))) == 2
+
+
+def test_a_file_that_takes_species_from_another_is_not_kept():
+    assert kept.key(b"species: [{nasa_gas.yaml/species: [O2]}]", "mine.yaml", False) is None
+    assert kept.key(b"species: [O2]", "mine.yaml", False) != kept.key(b"species: [N2]", "mine.yaml", False)
 
 
 # ---------------------------------------------------------------- walls

@@ -8,23 +8,24 @@ from pathlib import Path
 import pytest
 
 PACKAGE = Path(__file__).parent.parent / "reactor"
-ROOMS = ["errors", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "kernel", "models",
-         "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli"]
+ROOMS = ["errors", "store", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "kernel",
+         "models", "hazards", "result", "rating", "upsets", "sizing", "study", "report", "cli"]
 MAY_IMPORT = {
     "errors": set(),
+    "store": set(),
     "curve": set(),
     "units": {"errors"},
     "library": {"errors", "units"},
     "case": {"errors", "units", "library"},
     "stream": {"errors", "library"},
     "photons": {"errors", "curve", "units", "library"},
-    "chemistry": {"errors", "curve", "units", "library"},
+    "chemistry": {"errors", "store", "curve", "units", "library"},
     "heat": {"errors", "curve", "units", "library"},
-    "kernel": {"errors"},
+    "kernel": {"errors", "store"},
     "models": {"errors", "curve", "library", "case", "stream", "photons", "chemistry", "heat", "kernel"},
     "hazards": {"errors", "curve", "units", "library", "stream", "chemistry"},
     "result": {"errors", "units", "library", "case", "stream"},
-    "rating": {"errors", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "models",
+    "rating": {"errors", "store", "curve", "units", "library", "case", "stream", "photons", "chemistry", "heat", "models",
                "hazards", "result"},
     "report": {"errors", "units", "library", "result"},
 }
@@ -62,6 +63,17 @@ def test_an_upward_import_would_be_caught(tmp_path):
     wrong = tmp_path / "errors.py"
     wrong.write_text("from reactor.kernel import rates\nimport reactor.models.profile\nfrom reactor import cli\n")
     assert set(imported(wrong)) == {"kernel", "models", "cli"}
+
+
+def test_rating_a_case_whose_mechanism_is_known_loads_no_heavy_package():
+    code = (
+        "import sys\nfrom reactor.case import load\nfrom reactor.rating import rate\n"
+        f"rate(load({str(PACKAGE.parent / 'cases' / 'lapwing_ten.toml')!r}))\n"
+        "heavy = {'pandas', 'matplotlib', 'scipy', 'cantera', 'pint', 'ht', 'fluids', 'numpy.ma'} & set(sys.modules)\n"
+        "print('HEAVY', sorted(heavy))\n"
+    )
+    outs = [subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True).stdout for _ in "12"]
+    assert outs[-1].splitlines()[-1] == "HEAVY []"  # the first run may have met the mechanism for the first time
 
 
 @pytest.mark.parametrize("words", [["--help"], ["rate", "--help"], ["--version"]])

@@ -6,9 +6,11 @@ from pathlib import Path
 import numpy as np
 
 from reactor import library
+from reactor.chemistry import kept
 from reactor.chemistry.phase import names, phase
 from reactor.chemistry.record import Mechanism
-from reactor.chemistry.tables import tables
+from reactor.chemistry.tables import left_out, tables
+from reactor.chemistry.transport import fits
 from reactor.errors import CaseError
 
 SHIPPED = "mechanism/light_alkanes.yaml"
@@ -50,6 +52,24 @@ def mechanism(path=None):
 
 @cache
 def _read(file, stamp, shipped):
+    content = _content(file)
+    key = kept.key(content, file.name, shipped)
+    found = None if key is None else kept.find(key, file, stamp)
+    if found is None:
+        found = _made(file, stamp, shipped)
+        if key is not None and _content(file) == content:
+            kept.keep(key, found)
+    return found
+
+
+def _content(file):
+    try:
+        return file.read_bytes()
+    except OSError as error:
+        raise CaseError(f"{file}: cannot be read ({error.strerror}); check the path") from None
+
+
+def _made(file, stamp, shipped):
     name, gas, remarks = _choose(file, stamp, ["gas-lit"] if shipped else names(file))
     missing = [species for species in NEEDED if species not in gas.species_names]
     if missing:
@@ -74,8 +94,17 @@ def _read(file, stamp, shipped):
         g=np.array([_numbers(note.get("uncertainty", {}).get("g"))[0] for note in notes]),
         status=tuple(note.get("status", NOT_STATED) for note in notes),
         equations=tuple(reaction.equation for reaction in gas.reactions()),
-        cited=_cited(notes, gas, file), remarks=remarks, condensing=_condensing(gas),
+        cited=_cited(notes, gas, file), remarks=(*remarks, *left_out(gas)), condensing=_condensing(gas),
+        fits=_fits(file, name, stamp, species.index("Cl")),
     )  # fmt: skip
+
+
+def _fits(file, name, stamp, atom):
+    """Return the transport fits, None where the file has no sound ones: only who asks for them gets the reason."""
+    try:
+        return fits(phase(file, name, stamp, transport=True)[0], atom)
+    except CaseError:
+        return None
 
 
 def _choose(file, stamp, candidates):

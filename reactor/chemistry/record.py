@@ -7,7 +7,7 @@ import numpy as np
 
 from reactor.chemistry.phase import phase
 from reactor.chemistry.tables import Tables
-from reactor.errors import CaseError
+from reactor.chemistry.transport import Fits, conductivity, diffusivity, fits, viscosity
 from reactor.units import GAS_CONSTANT
 
 
@@ -89,6 +89,8 @@ class Mechanism:
         {species: (boiling point [K], critical temperature [K], critical pressure [Pa])} where the file states them.
     remarks : tuple of str
         What Cantera remarked when it read the file; empty for the mechanism that comes with the program.
+    fits : Fits or None
+        Transport properties of the pure gases, where the file holds their data.
     """
 
     name: str
@@ -114,6 +116,7 @@ class Mechanism:
     cited: tuple
     remarks: tuple
     condensing: dict = field(default_factory=dict)
+    fits: Fits | None = None
 
     def heat_capacity(self, T):
         """
@@ -130,7 +133,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] + T * (a[..., 2] + T * (a[..., 3] + T * a[..., 4]))
-        return GAS_CONSTANT * (a[..., 0] + T * series)
+        found = a[..., 0] + T * series
+        if self.tables.inverse_powers:
+            found = found + (a[..., 8] + a[..., 7] / T) / T
+        return GAS_CONSTANT * found
 
     def enthalpy(self, T):
         """
@@ -147,7 +153,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] / 2 + T * (a[..., 2] / 3 + T * (a[..., 3] / 4 + T * a[..., 4] / 5))
-        return GAS_CONSTANT * (T * (a[..., 0] + T * series) + a[..., 5])
+        found = T * (a[..., 0] + T * series) + a[..., 5]
+        if self.tables.inverse_powers:
+            found = found + a[..., 8] * np.log(T) - a[..., 7] / T
+        return GAS_CONSTANT * found
 
     def entropy(self, T):
         """
@@ -164,7 +173,10 @@ class Mechanism:
         """
         T, a = self._polynomials(T)
         series = a[..., 1] + T * (a[..., 2] / 2 + T * (a[..., 3] / 3 + T * a[..., 4] / 4))
-        return GAS_CONSTANT * (a[..., 0] * np.log(T) + T * series + a[..., 6])
+        found = a[..., 0] * np.log(T) + T * series + a[..., 6]
+        if self.tables.inverse_powers:
+            found = found - (a[..., 8] + a[..., 7] / (2 * T)) / T
+        return GAS_CONSTANT * found
 
     def _polynomials(self, T):
         T = np.asarray(T, dtype=float)[..., None]
@@ -208,19 +220,14 @@ class Mechanism:
         CaseError
             When the mechanism file holds no transport data.
         """
-        gas = self._mixture(T, P, moles)
+        pure = self.fits
+        if pure is None:
+            pure = fits(phase(self.path, self.phase, self.stamp, transport=True)[0], self.index["Cl"])
+        x = np.maximum(moles, 0.0)
+        x = x / x.sum()
+        mass = float(x @ self.molar_mass)
         return Transport(
-            gas.viscosity, gas.thermal_conductivity, gas.cp_mass, gas.density,
-            float(gas.mix_diff_coeffs[self.index["Cl"]]),
+            viscosity(pure, self.molar_mass, T, x), conductivity(pure, T, x),
+            float(x @ self.heat_capacity(T)) / mass, P * mass / (GAS_CONSTANT * T),
+            diffusivity(pure, self.molar_mass, self.index["Cl"], (T, P), x),
         )  # fmt: skip
-
-    def _mixture(self, T, P, moles):
-        gas, _ = phase(self.path, self.phase, self.stamp, transport=True)
-        if gas.transport_model != "mixture-averaged":
-            raise CaseError(
-                f"{self.path}: no transport data, which films and walls need; "
-                "add `transport: mixture-averaged` to the phase and a block "
-                "`transport: {model: gas, ...}` to every species"
-            )
-        gas.TPX = T, P, np.maximum(moles, 0.0)
-        return gas

@@ -14,12 +14,14 @@ and the standard pressure `reference_pressure`.
 """
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
 from reactor.errors import CaseError
 
 LINDEMANN = (1.0, 1e-30, 1e30, 1e30)  # a, T3, T1, T2 that make F_c = 1, hence F = 1, at any temperature
+COLDEST, HOTTEST = 200.0, 3000.0  # K; ranges of NASA9 outside these are left out
 NEVER = 1e30  # K; as T2 it drops the last term of F_c
 
 
@@ -50,8 +52,9 @@ class Tables:
         As `E`. [K]
     troe : array (R, 4)
         a [-] and T3, T1, T2 of F_c; rows without Troe numbers hold `LINDEMANN`, a T2 left out is `NEVER`. [K]
-    nasa_low, nasa_high : array (K, 7)
-        Polynomials of cp/R, h/RT and s/R below and above `t_mid`; one range: twice the same. [-]
+    nasa_low, nasa_high : array (K, 9)
+        Polynomials of cp/R, h/RT and s/R below and above `t_mid`; one range: twice the same. The seven numbers of
+        NASA7, then those of 1/T^2 and 1/T, which only NASA9 has. [-]
     t_mid : array (K,)
         Temperature up to which `nasa_low` holds. [K]
     t_low, t_high : array (K,)
@@ -79,6 +82,11 @@ class Tables:
     t_low: np.ndarray
     t_high: np.ndarray
     reference_pressure: float
+
+    @cached_property
+    def inverse_powers(self):
+        """Tell whether any species has terms in 1/T^2 and 1/T."""
+        return bool(self.nasa_low[:, 7:].any() or self.nasa_high[:, 7:].any())
 
 
 def tables(solution, file):
@@ -154,7 +162,14 @@ def _thermo_fault(species):
 
     if isinstance(species.thermo, cantera.NasaPoly2):
         return None
-    return f"{species.name}: its thermo is no NASA7 polynomial; write it with `model: NASA7`"
+    if not isinstance(species.thermo, cantera.Nasa9PolyMultiTempRegion):
+        return f"{species.name}: its thermo is no NASA polynomial; write it with `model: NASA7` or `model: NASA9`"
+    if 1 <= len(_nasa9(species.thermo)) <= 2:
+        return None
+    return (
+        f"{species.name}: the tables hold two ranges of its NASA9 polynomial between {COLDEST:.0f} and {HOTTEST:.0f} K, "
+        f"it has {len(_nasa9(species.thermo))} there"
+    )
 
 
 def _efficiencies(reaction, solution):
@@ -185,13 +200,36 @@ def _troe(reaction):
 
 def _polynomials(solution):
     """Return the polynomials of every species and their temperatures, by the names of `Tables`."""
-    thermo = [species.thermo for species in solution.species()]
-    numbers = np.array([polynomial.coeffs for polynomial in thermo])
-    limits = np.array([(polynomial.min_temp, polynomial.max_temp) for polynomial in thermo])
-    return {
-        "nasa_low": numbers[:, 8:],
-        "nasa_high": numbers[:, 1:8],
-        "t_mid": numbers[:, 0],
-        "t_low": limits[:, 0],
-        "t_high": limits[:, 1],
-    }
+    rows = [_ranges(species.thermo) for species in solution.species()]
+    low, high, limits = (np.array(column) for column in zip(*rows, strict=True))
+    return {"nasa_low": low, "nasa_high": high, "t_mid": limits[:, 1], "t_low": limits[:, 0], "t_high": limits[:, 2]}
+
+
+def _ranges(thermo):
+    """Return nine numbers below and above the middle temperature, and lowest, middle and highest temperature."""
+    import cantera
+
+    if isinstance(thermo, cantera.NasaPoly2):
+        numbers = thermo.coeffs
+        limits = thermo.min_temp, numbers[0], thermo.max_temp
+        return [*numbers[8:], 0.0, 0.0], [*numbers[1:8], 0.0, 0.0], limits
+    found = _nasa9(thermo)
+    low, high = found[0], found[-1]
+    return [*low[4:], *low[2:4]], [*high[4:], *high[2:4]], (low[0], low[1], high[1])
+
+
+def _nasa9(thermo):
+    """Return the ranges of a NASA9 polynomial that are of use, as rows (from, to, nine numbers)."""
+    ranges = thermo.coeffs[1:].reshape(-1, 11)
+    return [row for row in ranges.tolist() if row[0] < HOTTEST and row[1] > COLDEST]
+
+
+def left_out(solution):
+    """Return a remark on the ranges of NASA9 polynomials that the tables leave out, in a tuple; else nothing."""
+    import cantera
+
+    thermo = [s.thermo for s in solution.species() if isinstance(s.thermo, cantera.Nasa9PolyMultiTempRegion)]
+    count = sum(len(_nasa9(each)) < each.coeffs[0] for each in thermo)
+    if not count:
+        return ()
+    return (f"NASA9 polynomials of {count} species: ranges outside {COLDEST:.0f} to {HOTTEST:.0f} K are left out",)

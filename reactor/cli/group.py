@@ -6,6 +6,7 @@ Each command is a function of its own name in one of the modules beside this one
 
 import difflib
 import importlib
+import os
 import sys
 
 import click
@@ -72,6 +73,7 @@ def cli():
 
 def main():
     """Run the command line; print errors without a traceback."""
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # before numpy: its threads only get in the way of small sums
     for stream in (sys.stdout, sys.stderr):  # a title that the terminal cannot show becomes ?
         if hasattr(stream, "reconfigure"):
             stream.reconfigure(errors="replace")

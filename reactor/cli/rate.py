@@ -34,10 +34,13 @@ def rate(case, overrides, strict, as_json, save, profile, by_hand, fail_on, clai
     from reactor.case import load
     from reactor.rating import rate as run
     from reactor.report.terminal import render
-    from reactor.sizing.loop import closed
 
     broken_by = asserted(claims)
-    loaded = closed(load(case, overrides, strict))  # a recycle is closed first
+    loaded = load(case, overrides, strict)
+    if loaded.recycle is not None:
+        from reactor.sizing.loop import closed
+
+        loaded = closed(loaded)
     result = run(loaded)
     if save:
         write(save, result.to_json() + "\n")

@@ -64,8 +64,6 @@ def adiabatic_temperature(gas, before, T, after):
     T_ad : float
         Temperature after, up to 1700 K. [K]
     """
-    from scipy.optimize import brentq
-
     H = before @ gas.enthalpy(T)
 
     def excess(hot):
@@ -76,7 +74,44 @@ def adiabatic_temperature(gas, before, T, after):
         raise RangeError(
             f"adiabatic temperature: no solution between {low:.0f} and {high:.0f} K, starting from {T:.0f} K"
         )
-    return float(brentq(excess, low, high, xtol=1e-6))
+    return crossing(excess, low, high, 1e-6)
+
+
+def crossing(function, low, high, within):
+    """
+    Return where a function changes its sign between two places: false position, every third step a bisection.
+
+    Parameters
+    ----------
+    function : callable
+        Of one float; its signs at `low` and `high` differ. [-]
+    low, high : float
+        The two places. [-]
+    within : float
+        The answer is this close. [-]
+
+    Returns
+    -------
+    place : float
+        [-]
+
+    Examples
+    --------
+    >>> print(f"{crossing(lambda x: x * x - 2.0, 0.0, 2.0, 1e-12):.12f}")
+    1.414213562373
+    """
+    a, b, f_a, f_b, steps = low, high, function(low), function(high), 0
+    while f_b != 0.0 and abs(b - a) > within:
+        steps += 1
+        x = b - f_b * (b - a) / (f_b - f_a) if steps % 3 else (a + b) / 2
+        x = min(max(x, min(a, b) + within / 3), max(a, b) - within / 3)  # else one end would never move
+        f_x = function(x)
+        if f_x * f_b < 0:
+            a, f_a = b, f_b
+        else:
+            f_a /= 2
+        b, f_b = x, f_x
+    return float(b)
 
 
 @dataclass(frozen=True)
@@ -215,14 +250,12 @@ def dark_ignition(chain, response, low=300.0, high=1000.0):
     T : float
         Light-off temperature; nan if the chain is too slow at `high`, `low` if fast enough there. [K]
     """
-    from scipy.optimize import brentq
-
     def lag(T):
         return np.log(chain.time_to_maximum_rate(T) / response)
 
     if lag(low) <= 0:
         return low
-    return float(brentq(lag, low, high, xtol=1e-3)) if lag(high) < 0 else float("nan")
+    return crossing(lag, low, high, 1e-3) if lag(high) < 0 else float("nan")
 
 
 def heating_rate(power, heat_capacity):

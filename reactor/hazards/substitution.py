@@ -39,10 +39,16 @@ class Filling:
     def product_enthalpy(self, parents, chance):
         """Return the enthalpy (points x grid) of parents whose bonds are each filled with `chance`."""
         most = int((self.taken + self.left).max())
-        power = np.arange(most + 1)
-        filled, empty = chance[:, None] ** power, (1 - chance[:, None]) ** power
+        filled, empty = _powers(chance, most), _powers(1 - chance, most)
         share = parents[:, self.parent] * self.ways * filled[:, self.taken] * empty[:, self.left]
         return share @ self.enthalpy
+
+
+def _powers(x, most):
+    """Return x^0 to x^most of each x by multiplication, several times as fast as `**`."""
+    found = np.ones((len(x), most + 1))
+    found[:, 1:] = x[:, None]
+    return np.multiply.accumulate(found, axis=1)
 
 
 @dataclass(frozen=True)
@@ -109,7 +115,7 @@ def _atoms(gas):
 def _assemble(names, grid, own, atoms, molecule):
     C, H, Cl, rest = atoms.T
     saturated = molecule & (C > 0) & (rest == 0) & (H + Cl == 2 * C + 2)
-    sizes = np.unique(C[saturated])
+    sizes = np.array(sorted(set(C[saturated])))
     step = _mean_step(own, atoms, saturated)
     rungs = [_rungs(size, own, atoms, saturated, step) for size in sizes]
     place = {size: rungs[s] for s, size in enumerate(sizes)}

@@ -88,7 +88,7 @@ def tube_nusselt(reynolds, prandtl, diameter, length):
     References
     ----------
     .. [1] vdi, tubes: laminar mean with hydraulic and thermal entry.
-    .. [2] gnielinski1976 as in `ht.turbulent_Gnielinski`, entry factor 1 + (D/L)^(2/3).
+    .. [2] gnielinski1976, entry factor 1 + (D/L)^(2/3).
     .. [3] gnielinski2013: linear blend, here from 2300 to 4000.
 
     Examples
@@ -96,14 +96,41 @@ def tube_nusselt(reynolds, prandtl, diameter, length):
     >>> print(f"{tube_nusselt(7981.0, 0.6757, 0.045, 2.0):.2f}")
     25.66
     """
-    from ht import turbulent_Gnielinski
-
     check("tube", reynolds, prandtl, 5e6, (0.5, 2000.0), TUBE_TURBULENT, "gnielinski1976")
     low, high = np.minimum(reynolds, LAMINAR), np.maximum(reynolds, TUBE_TURBULENT)
     graetz = low * prandtl * diameter / length
     laminar = np.cbrt(3.66**3 + 0.7**3 + (1.615 * np.cbrt(graetz) - 0.7) ** 3 + starting(graetz, prandtl))
-    turbulent = turbulent_Gnielinski(Re=high, Pr=prandtl, fd=smooth_friction(high))
+    turbulent = gnielinski(high, prandtl, smooth_friction(high))
     return blend(reynolds, laminar, turbulent * entry(diameter, length), TUBE_TURBULENT)
+
+
+def gnielinski(reynolds, prandtl, friction):
+    """
+    Return the Nusselt number of turbulent flow in a long tube.
+
+    Parameters
+    ----------
+    reynolds, prandtl : float or array
+        Reynolds and Prandtl number. [-]
+    friction : float or array
+        Darcy friction factor. [-]
+
+    Returns
+    -------
+    nusselt : float or array
+        Nusselt number on the diameter. [-]
+
+    References
+    ----------
+    .. [1] gnielinski1976; `ht.turbulent_Gnielinski` is the same formula.
+
+    Examples
+    --------
+    >>> print(f"{gnielinski(1e5, 1.2, 0.0185):.2f}")
+    254.62
+    """
+    eighth = friction / 8.0
+    return eighth * (reynolds - 1000.0) * prandtl / (1.0 + 12.7 * np.sqrt(eighth) * (prandtl ** (2 / 3) - 1.0))
 
 
 def stirred_nusselt(reynolds, prandtl, impeller="turbine"):

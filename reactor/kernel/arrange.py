@@ -7,7 +7,7 @@ import numpy as np
 from reactor.errors import ReactorError
 from reactor.kernel.thermo import R
 
-BORDER, MARK = 4, 0x52504B31
+BORDER, MARK = 4, 0x52504B32
 
 
 class Item(NamedTuple):
@@ -108,9 +108,10 @@ def _items(slots, back_slots, first_back, count):
 
 
 def thermo_rows(coefficients):
-    """Return the 18 rows of numbers per species that the kernel reads for one temperature range."""
-    a = np.asarray(coefficients, float).T
+    """Return the 22 rows of numbers per species that the kernel reads for one temperature range, from 7 or 9 columns."""
+    a = np.zeros((9, len(coefficients)))
+    a[:np.shape(coefficients)[1]] = np.asarray(coefficients, float).T
     heat = R * a[:5]
     enthalpy = R * a[:5] / np.arange(1, 6)[:, None]
     free = -a[1:5] / np.array([2.0, 6.0, 12.0, 20.0])[:, None]
-    return np.concatenate((heat, enthalpy, R * a[5:6], a[:1], free, a[5:6], a[6:7]))
+    return np.concatenate((heat, enthalpy, R * a[5:6], a[:1], free, a[5:7], R * a[7:], -a[7:8] / 2, a[8:]))

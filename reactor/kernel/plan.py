@@ -6,17 +6,15 @@ found there is read only if its digest, sizes and every number in its lists are 
 """
 
 import hashlib
-import os
-import sys
-from pathlib import Path
 from typing import NamedTuple
 
 import numpy as np
 
+from reactor import store
 from reactor.errors import ReactorError
 from reactor.kernel.elimination import eliminate, order_species
 
-MARK = 0x52504B31  # as in native/plan.h; changes with the order of the arrays
+MARK = 0x52504B32  # as in native/plan.h; changes with the order of the arrays
 BORDER = 4  # total moles, pressure, coolant temperature, temperature
 TABLES = ("reactants", "products", "reversible", "third_body", "falloff", "efficiencies", "b", "E", "low_b", "low_E",
           "troe", "nasa_low", "nasa_high", "t_mid")
@@ -51,25 +49,12 @@ def plan(tables, photolysis, wall, chlorine, starts):
     """
     numbers = (int(photolysis), int(wall), float(tables.reference_pressure), int(chlorine), tuple(map(int, starts)))
     key = _key(tables, numbers)
-    path = folder() / f"{key[:32]}.plan"
-    found = _read(path, key)
+    kept = store.find("plan", key)
+    found = None if kept is None else _read(kept)
     if found is None:
         found = _make(tables, *numbers)
-        _write(path, key, found)
+        store.keep("plan", key, _bytes(found))
     return found
-
-
-def folder():
-    """Return the folder that keeps plans: REACTOR_CACHE, or the user's own cache folder."""
-    if "REACTOR_CACHE" in os.environ:
-        return Path(os.environ["REACTOR_CACHE"])
-    if sys.platform == "win32":
-        base = os.environ.get("LOCALAPPDATA", "~")
-    elif sys.platform == "darwin":
-        base = "~/Library/Caches"
-    else:
-        base = os.environ.get("XDG_CACHE_HOME", "~/.cache")
-    return Path(base).expanduser() / "photochlorination-reactor"
 
 
 def _key(tables, numbers):
@@ -80,27 +65,14 @@ def _key(tables, numbers):
     return digest.hexdigest()
 
 
-def _write(path, key, found):
-    """Keep a plan; a folder that cannot be written to is no reason to stop."""
-    body = b"".join([np.array([len(found.ints), len(found.reals)], "<i8").tobytes(),
+def _bytes(found):
+    return b"".join([np.array([len(found.ints), len(found.reals)], "<i8").tobytes(),
                      found.ints.astype("<i4").tobytes(), found.reals.astype("<f8").tobytes()])
-    mine = path.with_suffix(f".{os.getpid()}")
-    try:
-        path.parent.mkdir(parents=True, exist_ok=True)
-        mine.write_bytes(bytes.fromhex(key) + hashlib.sha256(body).digest() + body)
-        mine.replace(path)
-    except OSError:
-        return
 
 
-def _read(path, key):
-    """Return the plan kept at `path`, or None where it is missing, stale, broken or not ours."""
-    try:
-        data = path.read_bytes()
-    except OSError:
-        return None
-    body = data[64:]
-    if data[:32] != bytes.fromhex(key) or data[32:64] != hashlib.sha256(body).digest() or len(body) < 16:
+def _read(body):
+    """Return the plan in these bytes, or None where they hold none."""
+    if len(body) < 16:
         return None
     counts = np.frombuffer(body[:16], "<i8")
     if counts.min() < 0 or len(body) != 16 + 4 * counts[0] + 8 * counts[1]:
@@ -187,7 +159,7 @@ def _open(ints, reals):
     K, R, moving = at["species"], at["reactions"], at["reactions"] - at["fixed"]
     others = sum(int(found[f"{name}_sizes"][2]) for name in ("equilibrium", "production", "jacobian"))
     size = (others + 2 * moving + 2 * at["back"] + R + at["bodies"] + at["specials"] + 7 * at["falloffs"] + at["items"]
-            + 37 * K + 2)
+            + 45 * K + 2)
     sound = (
         len(reals) == size and at["first_back"] + at["back"] == R and at["fixed"] <= at["first_back"]
         and at["bodies"] == at["colliders"] + at["falloffs"] and max(at["photolysis"], at["wall"]) < at["fixed"]

@@ -34,13 +34,15 @@ class Rates:
 
     @functools.cached_property
     def _own(self):
-        """Return the plan for rates at a point, with A and the low-pressure A in its order."""
+        """Return the plan for rates at a point, with A and the low-pressure A in its order, and the way back."""
         absorber = int(np.argmax(self.tables.reactants[self.photolysis]))
         own = self.plan(absorber, ())
-        return own, self.tables.A[own.reactions].astype(float), self.tables.low_A[own.falloffs].astype(float)
+        back = np.argsort(own.species)
+        A, low_A = self.tables.A[own.reactions].astype(float), self.tables.low_A[own.falloffs].astype(float)
+        return own, A, low_A, (back, back[:, None])
 
     def _at(self, c, T, J, wall_loss, slopes=False):
-        own, A, low_A = self._own
+        own, A, low_A, _ = self._own
         K, R = len(own.species), len(own.reactions)
         c = np.ascontiguousarray(np.asarray(c, float)[own.species])
         out = np.empty(5 * K + 2 * R)
@@ -87,8 +89,8 @@ class Rates:
         """Return production w, dw/dc (K, K), dw/dT at fixed c, dw/dJ, and the reverse rates."""
         own, out, more = self._at(c, T, J, wall_loss, slopes=True)
         K = len(own.species)
-        by_c = np.empty((K, K))
-        by_c[np.ix_(own.species, own.species)] = more[:K * K].reshape(K, K)
+        columns, rows = self._own[3]
+        by_c = more[:K * K].reshape(K, K)[rows, columns]
         by_T, by_J = (self._species(own, more[K * K + i * K:K * K + (i + 1) * K]) for i in range(2))
         return self._species(own, out[-K:]), by_c, by_T, by_J, self._steps(own, out)[1]
 

@@ -5,6 +5,7 @@ import numpy as np
 from reactor.kernel.rates import Rates
 
 NEWTON = 40  # steps that bring the radicals to rest before their answer to light is read
+SETTLED = 1e-6  # relative step of the radicals after which their answer is read: as good as the order then is
 RECOMBINATION = 1e6  # m^3/mol/s; a low termination constant, so that the search starts from too many radicals
 
 
@@ -44,12 +45,13 @@ def light_order(profile, gas, wall_loss, stations=None):
 
 
 def _order(rates, c, T, J, wall_loss, acid, radical):
+    block = radical[:, None], radical
     for _ in range(NEWTON):
         w, by_c, _, by_J, _ = rates.derivatives(c, T, J, wall_loss)
-        inner = by_c[np.ix_(radical, radical)]
+        inner = by_c[block]
         step = np.linalg.solve(inner, -w[radical])
         c[radical] = np.maximum(c[radical] + step, 0.1 * c[radical])
-        if np.all(np.abs(step) <= 1e-8 * c[radical] + 1e-30):
+        if np.all(np.abs(step) <= SETTLED * c[radical] + 1e-30):
             break
     response = np.linalg.solve(inner, -J * by_J[radical])
     return float((by_c[acid, radical] @ response + J * by_J[acid]) / w[acid])

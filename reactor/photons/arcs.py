@@ -15,7 +15,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from reactor.curve import Curve
+from reactor.curve import Curve, spline_slopes
 from reactor.photons import spread
 from reactor.photons.laws import gauss
 
@@ -202,10 +202,8 @@ def _taken(rays, slope, weight, arc, grid):
 
 def smooth(density, grid):
     """Return a density at the places of an even grid as a curve over its mean."""
-    from scipy.interpolate import CubicSpline
-
     step = float(grid[1] - grid[0])
-    slope = CubicSpline(grid, density)(grid, 1)
+    slope = spline_slopes(density, step)
     area = step * (density.sum() - (density[0] + density[-1]) / 2) + step**2 / 12 * (slope[0] - slope[-1])
     scale = float(grid[-1]) / area
     return Curve(0.0, step, density * scale, slope * scale)

@@ -16,7 +16,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from reactor.curve import Curve
+from reactor.curve import Curve, spline_slopes
 from reactor.photons import spread
 from reactor.photons.laws import slopes
 from reactor.photons.shapes import rays_of
@@ -160,6 +160,5 @@ def curve(cells, weight, sigma, order):
     J = J / (cells.volume @ J)
     orders = order(grid) if callable(order) else np.full(len(grid), order)
     value = np.array([effective(*pair) for pair in zip(J.T, [cells.volume] * len(grid), orders, strict=True)])
-    from scipy.interpolate import CubicSpline
-
-    return Curve(float(FROM), float(grid[1] - grid[0]), value, CubicSpline(grid, value)(grid, 1))
+    step = float(grid[1] - grid[0])
+    return Curve(float(FROM), step, value, spline_slopes(value, step))

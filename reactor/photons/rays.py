@@ -159,7 +159,7 @@ def grouped(rays, classes=16):
     chord = rays.after[start] - rays.before[start]
     level = rays.weight[start] * rays.share
     kinds = []
-    for stretches in np.unique(count[level > 0]):
+    for stretches in sorted(set(count[level > 0].tolist())):
         members = np.flatnonzero((count == stretches) & (level > 0))
         order = members[np.argsort(chord[members])]
         few = max(1, round(classes / stretches))  # light that has come often is faint

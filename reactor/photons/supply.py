@@ -130,7 +130,7 @@ def light(lamps, sleeve, shape, length):
     """
     lot.check(lamps, sleeve, shape)
     known = [lot.known(each) for each in lamps]
-    line = np.unique(lot.rounded(np.concatenate([np.zeros(0), *(each.spectrum.wavelength for each in known)])))
+    line = np.array(sorted({x for each in known for x in lot.rounded(each.spectrum.wavelength).tolist()}), float)
     sources = [lot.source(*pair, line, shape.tubes) for pair in zip(lamps, known, strict=True)]
     radiant = sum((source.radiant for source in sources), np.zeros(len(line)))
     law, radius = lot.law(lamps, known, shape)

@@ -101,5 +101,5 @@ def columns(profile, gas, classes):
 def thinned(profile):
     """Return the numbers of the stations that are kept."""
     last = len(profile.z) - 1
-    even = np.unique(np.linspace(0, last, min(KEPT, last + 1)).round().astype(int))
-    return np.union1d(even, [int(profile.temperature.argmax())])
+    even = np.linspace(0, last, min(KEPT, last + 1)).round().astype(int)
+    return np.array(sorted({*even.tolist(), int(profile.temperature.argmax())}))

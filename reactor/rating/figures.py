@@ -215,6 +215,6 @@ def spread(profile, gas):
     even = np.searchsorted(acid, np.linspace(acid[0], acid[-1], ORDERS))
     edge = np.flatnonzero(np.diff(profile.photolysis > 0))
     last = len(acid) - 1
-    keep = np.unique(np.clip([0, last, *even, *edge, *(edge + 1)], 0, last))
+    keep = sorted(set(np.clip([0, last, *even, *edge, *(edge + 1)], 0, last).tolist()))
     names = ("z", "moles", "temperature", "coolant", "pressure", "photolysis")
     return replace(profile, **{name: getattr(profile, name)[keep] for name in names})

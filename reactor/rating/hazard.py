@@ -155,7 +155,7 @@ def light_off_temperature(profile, gas, feed):
 def dew_margin(profile, gas):
     """Return the smallest distance of the coldest surface from the dew point [K], None if dry."""
     margins = []
-    for i in np.unique(np.linspace(0, len(profile.z) - 1, DEW_STATIONS).round().astype(int)):
+    for i in sorted(set(np.linspace(0, len(profile.z) - 1, DEW_STATIONS).round().astype(int).tolist())):
         share = profile.moles[i] / profile.moles[i].sum()
         mixture = dict(zip(gas.species, share, strict=True))
         dew = dewpoint.dew_point(mixture, profile.pressure[i], gas.condensing)

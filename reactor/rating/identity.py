@@ -1,10 +1,13 @@
 """What was put in, what was taken for granted, what was relied on, and the hashes that name a run."""
 
 import hashlib
+import os
 from functools import cache
 from pathlib import Path
 
-from reactor import library
+import numpy as np
+
+from reactor import library, store
 
 
 def inputs(case):
@@ -56,17 +59,15 @@ def rates(gas):
 
 def identity(case, gas):
     """Return the hashes of case, data and program, and the versions."""
-    from importlib.metadata import version
-
     return {
         "case": case.hash(),
         "data": digest("data"),
         "mechanism": hashlib.sha256(gas.path.read_bytes()).hexdigest(),
-        "program": version("photochlorination-reactor"),
+        "program": store.version("photochlorination-reactor"),
         "code": digest("code"),
-        "numpy": version("numpy"),
-        "cantera": version("cantera"),
-        "scipy": version("scipy"),
+        "numpy": np.__version__,
+        "cantera": store.version("cantera"),
+        "scipy": store.version("scipy"),
     }
 
 
@@ -75,9 +76,13 @@ def digest(which):
     """Return the SHA-256 of all data files, or of all modules of the program, in order of their names."""
     folder = library.folder() if which == "data" else Path(__file__).parent.parent
     endings = (".csv", ".toml", ".yaml") if which == "data" else (".py", ".c", ".h")
-    found = hashlib.sha256()
-    for path in sorted(folder.rglob("*")):
-        relative = path.relative_to(folder)
-        if path.suffix in endings and not (which == "code" and relative.parts[0] in ("data", "cases")):
-            found.update(relative.as_posix().encode() + b"\0" + path.read_bytes())
+    found, files = hashlib.sha256(), []
+    for place, folders, names in os.walk(folder):  # pathlib's own walk takes three times as long
+        inside = Path(place).relative_to(folder).parts
+        if which == "code" and not inside:
+            folders[:] = [name for name in folders if name not in ("data", "cases")]
+        files += [(*inside, name) for name in names if name.endswith(endings)]
+    for parts in sorted(files):
+        with open(os.path.join(folder, *parts), "rb") as file:
+            found.update("/".join(parts).encode() + b"\0" + file.read())
     return found.hexdigest()

@@ -331,3 +331,14 @@ def test_chlorine_atoms_diffuse_in_methane_and_chlorine_about_as_reckoned_by_han
     moles = np.zeros(len(gas.species))
     moles[[gas.index["CH4"], gas.index["Cl2"]]] = 4.0, 1.0
     assert gas.transport(313.0, 1.1e5, moles).diffusivity_chlorine_atom == approx(1.7e-5, rel=0.1)
+
+
+@pytest.mark.parametrize("ratio", [1e-30, 1e-9, 1e-4, 0.1, 0.5, 0.9, 0.9999])
+def test_the_eigenvalue_of_a_ring_gap_is_the_zero_of_the_cross_product_of_bessel_functions(ratio):
+    # Source: scipy.special.j0, y0 (seen).
+    from scipy.optimize import brentq
+    from scipy.special import j0, y0
+
+    gap = 1.0 - ratio
+    zero = brentq(lambda a: j0(a / gap) * y0(a * ratio / gap) - y0(a / gap) * j0(a * ratio / gap), 2.4, 3.15, xtol=1e-13)
+    assert wall.annulus_eigenvalue(ratio, 1.0) == approx((zero / gap) ** 2, rel=1e-10)

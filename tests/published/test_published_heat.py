@@ -235,3 +235,11 @@ def test_sleeve_skin_is_as_worked(flux, film, T_gas, skin, bare, radiated):
     assert found - 273.15 == approx(skin, abs=0.12)
     assert heat.sleeve_skin(T, shell, film, 0.0, flux) - 273.15 == approx(bare, rel=2e-3)
     assert sleeve.radiation_film(found, shell, exchange) * (found - shell) == approx(radiated, rel=2e-3)
+
+
+def test_the_turbulent_film_of_a_long_tube_is_that_of_ht():
+    # Source: ht.turbulent_Gnielinski (seen). Transcription check.
+    from ht import turbulent_Gnielinski
+
+    for Re, Pr, fd in ((4e3, 0.5, 0.04), (2.3e4, 0.71, 0.025), (1e5, 1.2, 0.0185), (5e6, 2000.0, 0.009)):
+        assert films.gnielinski(Re, Pr, fd) == approx(turbulent_Gnielinski(Re=Re, Pr=Pr, fd=fd), rel=1e-12)

@@ -1,4 +1,4 @@
-"""Ideal-gas heat capacity, enthalpy and entropy from seven-coefficient polynomials in two ranges."""
+"""Ideal-gas heat capacity, enthalpy and entropy from polynomials of seven or nine coefficients in two ranges."""
 
 import numpy as np
 
@@ -14,7 +14,7 @@ class Thermo:
         self.p_ref = tables.reference_pressure
 
     def coefficients(self, T):
-        """Return the (K, 7) coefficients that hold at `T`."""
+        """Return the (K, 7 or 9) coefficients that hold at `T`."""
         return np.where((self.t_mid < T)[:, None], self.high, self.low)
 
     def at(self, T):
@@ -25,4 +25,10 @@ class Thermo:
         slope = a[:, 1:5] @ (np.array([1.0, 2.0, 3.0, 4.0]) * powers[:4])
         h = a[:, :5] @ (powers / np.array([1.0, 2.0, 3.0, 4.0, 5.0])) + a[:, 5] / T
         s = a[:, 0] * np.log(T) + a[:, 1:5] @ (powers[1:] / np.array([1.0, 2.0, 3.0, 4.0])) + a[:, 6]
+        if a.shape[1] == 9:
+            two, one = a[:, 7], a[:, 8]
+            cp = cp + two / T**2 + one / T
+            slope = slope - 2 * two / T**3 - one / T**2
+            h = h - two / T**2 + one * np.log(T) / T
+            s = s - two / (2 * T**2) - one / T
         return R * cp, R * slope, R * T * h, h - s

@@ -172,6 +172,8 @@ def find(words):
     >>> find("isobutane"), find("1,2-C3H6Cl2") == find("propylene dichloride"), find("N2")
     ('C(C)(C)C', True, None)
     """
+    if words in _formulae():
+        return structures().get(words) or _isomers(_formulae()[words]).get(words)
     if code := alkane(words):
         return code
     spoken = words.strip().lower()
@@ -182,6 +184,13 @@ def find(words):
                 return structures()[row["key"]]
             return _isomers(row["formula"]).get(row["key"])
     return None
+
+
+@cache
+def _formulae():
+    """Return {key: formula} of the listed molecules."""
+    rows = (*library.table("species.csv").rows, *library.table("networks/names.csv").rows)
+    return {row["key"]: row["formula"] for row in rows if row["kind"] == "molecule"}
 
 
 @cache

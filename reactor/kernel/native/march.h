@@ -45,6 +45,7 @@ static void settle(March *m, const mask accepted)
     int K = p->species;
     lane target = all(0.0), found, capacity, *y = m->w->next, total = all(0.0);
     Heat at = {.T = y[K + 3], .inverse = 1.0 / y[K + 3], .log = all(0.0)};
+    if (p->inverse) at.log = log_lane(at.T);
     thermo(p, &at, m->w->cp, m->w->h, m->w->g);
     found = dot(y, m->w->h, K), capacity = dot(y, m->w->cp, K);
     EACH(l) {

@@ -4,8 +4,9 @@
 
 #include <stdint.h>
 
-#define PLAN_MARK 0x52504b31 /* changes with every change of the order below */
-#define THERMO_ROWS 18
+#define PLAN_MARK 0x52504b32 /* changes with every change of the order below */
+#define THERMO_ROWS 22 /* of which the last INVERSE_ROWS are the terms in 1/T and 1/T2, nought but in NASA9 */
+#define INVERSE_ROWS 4
 #define BORDER 4 /* unknowns after the species: total moles S, pressure P, coolant temperature Tc, temperature T */
 #define TOTALS 9
 
@@ -35,6 +36,7 @@ typedef struct {
     const double *b, *E, *change, *order, *back_order, *usual, *special_by, *low_b, *low_E, *troe, *item_by;
     const double *low, *high, *t_mid;                           /* THERMO_ROWS rows of `species` numbers */
     double p_ref, t_mid_least;
+    int inverse;                                                /* whether any species has terms in 1/T and 1/T2 */
 } Plan;
 
 static inline const int32_t *take(const int32_t **from, int n)
@@ -103,6 +105,9 @@ static inline void read_plan(Plan *p, const int32_t *ints, const double *reals)
     p->troe = take_real(&x, 5 * p->falloffs), p->item_by = take_real(&x, p->items);
     p->low = take_real(&x, THERMO_ROWS * K), p->high = take_real(&x, THERMO_ROWS * K), p->t_mid = take_real(&x, K);
     p->p_ref = *take_real(&x, 1), p->t_mid_least = *take_real(&x, 1);
+    p->inverse = 0;
+    for (int n = (THERMO_ROWS - INVERSE_ROWS) * K; n < THERMO_ROWS * K; n++)
+        p->inverse |= p->low[n] != 0.0 || p->high[n] != 0.0;
 }
 
 #endif

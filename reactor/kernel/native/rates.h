@@ -60,15 +60,27 @@ static inline void polynomial(const double *restrict a, int K, int s, const Heat
        + T * (a[12 * K] + T * (a[13 * K] + T * (a[14 * K] + T * a[15 * K])));
 }
 
+/* The terms in 1/T and 1/T2, added to those of `polynomial`. */
+static inline void inverse_powers(const double *restrict a, int K, int s, const Heat *at, lane *cp, lane *h, lane *g)
+{
+    lane u = at->inverse;
+    a += (THERMO_ROWS - INVERSE_ROWS) * K + s;
+    *cp += u * (a[K] + u * a[0]);
+    *h += a[K] * at->log - u * a[0];
+    *g += u * (a[3 * K] * (1.0 + at->log) + u * a[2 * K]);
+}
+
 /* The upper range is worked out only where one of the lanes has reached it. */
 static void thermo(const Plan *p, const Heat *at, lane *restrict cp, lane *restrict h, lane *restrict g)
 {
     int K = p->species, hot = 0;
     for (int s = 0; s < K; s++) polynomial(p->low, K, s, at, cp + s, h + s, g + s);
+    for (int s = 0; p->inverse && s < K; s++) inverse_powers(p->low, K, s, at, cp + s, h + s, g + s);
     EACH(l) hot |= SEEN(at->T, l) > p->t_mid_least;
     for (int s = 0; hot && s < K; s++) {
         lane cp_high, h_high, g_high;
         polynomial(p->high, K, s, at, &cp_high, &h_high, &g_high);
+        if (p->inverse) inverse_powers(p->high, K, s, at, &cp_high, &h_high, &g_high);
         mask above = MASK(at->T > p->t_mid[s]);
         cp[s] = pick(above, cp_high, cp[s]), h[s] = pick(above, h_high, h[s]), g[s] = pick(above, g_high, g[s]);
     }
@@ -82,6 +94,12 @@ static inline lane capacity_slope(const Plan *p, const Heat *at, int s)
     lane T = at->T;
     lane cold = low[K] + T * (2.0 * low[2 * K] + T * (3.0 * low[3 * K] + T * (4.0 * low[4 * K])));
     lane hot = high[K] + T * (2.0 * high[2 * K] + T * (3.0 * high[3 * K] + T * (4.0 * high[4 * K])));
+    if (p->inverse) {
+        int first = (THERMO_ROWS - INVERSE_ROWS) * K;
+        lane u = at->inverse, u2 = u * u;
+        cold -= u2 * (low[first + K] + 2.0 * u * low[first]);
+        hot -= u2 * (high[first + K] + 2.0 * u * high[first]);
+    }
     return pick(MASK(T > p->t_mid[s]), hot, cold);
 }
 

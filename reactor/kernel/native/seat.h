@@ -136,6 +136,11 @@ static void heat_of(const Plan *p, int s, double T, double *h, double *cp)
     int K = p->species;
     *cp = a[0] + T * (a[K] + T * (a[2 * K] + T * (a[3 * K] + T * a[4 * K])));
     *h = a[10 * K] + T * (a[5 * K] + T * (a[6 * K] + T * (a[7 * K] + T * (a[8 * K] + T * a[9 * K]))));
+    if (!p->inverse) return;
+    lane log = log_lane(all(T));
+    a += (THERMO_ROWS - INVERSE_ROWS) * K;
+    *cp += (a[K] + a[0] / T) / T;
+    *h += a[K] * SEEN(log, 0) - a[0] / T;
 }
 
 static double enthalpy_of(const March *m, int l, double T, double *capacity)
