@@ -40,7 +40,7 @@ def test_light_of_methane_in_plug_flow_agrees_within_a_factor_two(name, rated):
 
 def test_light_of_the_hottest_and_richest_tube_misses_the_factor_two_by_a_hair(rated):
     # Chloromethyl radicals, and light lost by ends and slant, add up to 2.06: recorded as a miss, marked in the report.
-    assert lines(rated, "lapwing_ten")["light into the gas"].ratio == approx(2.06, abs=0.02)
+    assert lines(rated, "lapwing_ten")["light into the gas"].ratio == pytest.approx(2.06, abs=0.02)
 
 
 def test_a_ratio_outside_a_half_to_two_is_marked(rated):
