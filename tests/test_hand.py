@@ -33,10 +33,14 @@ def test_flows_and_heat_agree_with_the_hand_rules_within_ten_per_cent(name, rate
     assert found["heat of reaction"].ratio == pytest.approx(1, abs=0.10)
 
 
-@pytest.mark.parametrize(("name", "factor"), [("lapwing", 2), ("dunnock_tube", 2), ("lapwing_ten", 3)])
-def test_light_of_methane_in_plug_flow_agrees_within_the_factor_that_the_rule_allows(name, factor, rated):
-    # lapwing_ten is hottest and richest: chloromethyl radicals and light lost by ends and slant add up to 2.06.
-    assert 1 / factor < lines(rated, name)["light into the gas"].ratio < factor
+@pytest.mark.parametrize("name", ["lapwing", "dunnock_tube"])
+def test_light_of_methane_in_plug_flow_agrees_within_a_factor_two(name, rated):
+    assert 0.5 < lines(rated, name)["light into the gas"].ratio < 2.0
+
+
+def test_light_of_the_hottest_and_richest_tube_misses_the_factor_two_by_a_hair(rated):
+    # Chloromethyl radicals, and light lost by ends and slant, add up to 2.06: recorded as a miss, marked in the report.
+    assert lines(rated, "lapwing_ten")["light into the gas"].ratio == pytest.approx(2.06, abs=0.02)
 
 
 def test_a_ratio_outside_a_half_to_two_is_marked(rated):
